@@ -1,0 +1,134 @@
+package estimate
+
+import (
+	"math"
+	"math/cmplx"
+	"slices"
+)
+
+// cholesky factors the n by n Hermitian a (row by row; its lower triangle is read) into L L^H and
+// writes L into the lower triangle of dst. It returns false when a is not positive definite.
+// Golub and Van Loan, Matrix Computations, 4th ed., 2013, section 4.2.
+func cholesky(dst, a []complex128, n int) bool {
+	for j := range n {
+		d := real(a[j*n+j])
+		for k := range j {
+			d -= abs2(dst[j*n+k])
+		}
+		if !(d > 0) || math.IsInf(d, 1) {
+			return false
+		}
+		d = math.Sqrt(d)
+		dst[j*n+j] = complex(d, 0)
+		for i := j + 1; i < n; i++ {
+			v := a[i*n+j]
+			for k := range j {
+				v -= dst[i*n+k] * cmplx.Conj(dst[j*n+k])
+			}
+			dst[i*n+j] = v / complex(d, 0)
+		}
+	}
+	return true
+}
+
+// solveLower replaces b by the solution x of L x = b, L being the lower triangle of l.
+func solveLower(l, b []complex128) {
+	n := len(b)
+	for i := range n {
+		for k := range i {
+			b[i] -= l[i*n+k] * b[k]
+		}
+		b[i] /= l[i*n+i]
+	}
+}
+
+// solveLowerAdjoint replaces b by the solution x of L^H x = b.
+func solveLowerAdjoint(l, b []complex128) {
+	n := len(b)
+	for i := n - 1; i >= 0; i-- {
+		for k := i + 1; k < n; k++ {
+			b[i] -= cmplx.Conj(l[k*n+i]) * b[k]
+		}
+		b[i] /= l[i*n+i]
+	}
+}
+
+// maxSweeps is far above the six or so that Jacobi's method needs at these sizes; it only bounds the
+// time that a matrix with NaN in it can take.
+const maxSweeps = 40
+
+// eigenvalues writes the eigenvalues of the Hermitian a, largest first, into dst, and destroys a.
+// All are NaN when a holds a value that is not finite.
+//
+// Cyclic Jacobi (Golub and Van Loan, section 8.5), which finds small eigenvalues of a badly scaled
+// positive matrix as precisely as its entries define them (Demmel and Veselić, SIAM J. Matrix Anal.
+// Appl. 13, 1992).
+func eigenvalues(dst []float64, a []complex128) {
+	n := len(dst)
+	for range maxSweeps {
+		rotated := false
+		for i := 1; i < n; i++ {
+			for j := range i {
+				rotated = rotate(a, n, j, i) || rotated
+			}
+		}
+		if !rotated {
+			break
+		}
+	}
+	for i := range dst {
+		dst[i] = real(a[i*n+i])
+	}
+	for _, v := range a {
+		if cmplx.IsNaN(v) || cmplx.IsInf(v) {
+			fill(dst, math.NaN())
+			return
+		}
+	}
+	slices.SortFunc(dst, func(x, y float64) int {
+		if x > y {
+			return -1
+		}
+		if x < y {
+			return 1
+		}
+		return 0
+	})
+}
+
+// rotate makes a[i,j] zero by a unitary rotation of rows and columns i and j, i < j, and tells
+// whether that changed anything.
+func rotate(a []complex128, n, i, j int) bool {
+	off := a[i*n+j]
+	size := math.Hypot(real(off), imag(off))
+	aii, ajj := real(a[i*n+i]), real(a[j*n+j])
+	if !(size > epsilon*math.Sqrt(math.Abs(aii))*math.Sqrt(math.Abs(ajj))) {
+		return false
+	}
+	phase := off / complex(size, 0)
+	theta := (ajj - aii) / (2 * size)
+	t := 1 / (math.Abs(theta) + math.Hypot(theta, 1))
+	if theta < 0 {
+		t = -t
+	}
+	c := 1 / math.Hypot(t, 1)
+	s := complex(t*c, 0) * phase
+	for k := range n {
+		if k == i || k == j {
+			continue
+		}
+		aik, ajk := a[i*n+k], a[j*n+k]
+		a[i*n+k] = complex(c, 0)*aik - s*ajk
+		a[j*n+k] = cmplx.Conj(s)*aik + complex(c, 0)*ajk
+		a[k*n+i] = cmplx.Conj(a[i*n+k])
+		a[k*n+j] = cmplx.Conj(a[j*n+k])
+	}
+	a[i*n+i] = complex(aii-t*size, 0)
+	a[j*n+j] = complex(ajj+t*size, 0)
+	a[i*n+j], a[j*n+i] = 0, 0
+	return true
+}
+
+const epsilon = 0x1p-53
+
+func abs2(v complex128) float64 { return real(v)*real(v) + imag(v)*imag(v) }
