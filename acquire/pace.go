@@ -41,13 +41,11 @@ func (p *Pacer) Read(dst []float64) (n int, err error) {
 		p.start = time.Now()
 	}
 	n, err = p.source.Read(dst)
-	var gap *GapError
-	switch {
-	case err == nil:
+	if err == nil {
 		p.frames += int64(n)
-	case errors.As(err, &gap):
+	} else if gap, ok := errors.AsType[*GapError](err); ok {
 		p.frames += gap.Frames
-	default:
+	} else {
 		p.err = err
 		return 0, err
 	}
