@@ -1,0 +1,8 @@
+package web
+
+// Keys of log attributes.
+const (
+	keyError   = "error"
+	keyBrowser = "browser" // its address
+	keyHost    = "host"
+)

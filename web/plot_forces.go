@@ -1,0 +1,30 @@
+package web
+
+import (
+	"fmt"
+
+	"shakerwatch/acquire/rig"
+)
+
+// forcesPlot shows what the shakers put in.
+func forcesPlot(forces []rig.Channel) plot {
+	const unit = "dB"
+	p := plot{
+		ID:    "forces",
+		Title: "Force spectra",
+		Help:  "Density of each force, and the principal forces: what independent forces could do the same. A last principal force far below the others means that in truth fewer forces act.",
+		Axis:  overFrequency,
+		Panes: []pane{{Quantity: "dB re 1 N²/Hz"}},
+	}
+	for i := range forces {
+		p.Curves = append(p.Curves, curve{
+			From: "forces.principal", Index: i, Name: fmt.Sprintf("principal %d", i+1), Group: "principal forces", Role: shade("principal", i), Dash: solid, Weight: fine, Unit: unit,
+		})
+	}
+	for i, f := range forces {
+		p.Curves = append(p.Curves, curve{
+			From: "forces.spectrum", Index: i, Name: f.Name, Role: shade("force", i), Dash: solid, Unit: unit,
+		})
+	}
+	return p
+}
