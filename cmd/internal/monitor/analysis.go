@@ -1,0 +1,185 @@
+package monitor
+
+import (
+	"time"
+
+	"shakerwatch/estimate"
+	"shakerwatch/estimate/watch"
+	"shakerwatch/spectra"
+)
+
+// analysis transforms, judges and averages blocks.
+type analysis struct {
+	config  Config
+	from    *intake
+	stop    func() // ends the capture
+	workers *spectra.Workers
+	average *spectra.Average
+	engine  *spectra.Engine
+	watch   *watch.Watch
+
+	counts Counts
+	timeS  float64 // at the end of the last block seen
+	events []watch.Event
+
+	// Those waiting, scratch of one batch.
+	batch     []cut
+	transform []*spectra.Block
+	accepted  []*spectra.Block
+	shown     time.Time
+}
+
+func newAnalysis(c Config, from *intake, stop func()) *analysis {
+	g := c.Rig.Grid
+	window := spectra.Window(c.Rig.Analysis.Window).Values(g.Block)
+	average := spectra.NewAverage(shapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz)
+	workers := spectra.NewWorkers(c.Workers)
+	return &analysis{
+		config:  c,
+		from:    from,
+		stop:    stop,
+		workers: workers,
+		average: average,
+		engine:  spectra.NewEngine(average, window, workers),
+		watch:   watch.New(names(c.Rig)),
+	}
+}
+
+func (a *analysis) close() { a.workers.Close() }
+
+// run takes cuts until there are no more. Those that wait are worked on together.
+func (a *analysis) run(o *observer) {
+	for c := range a.from.cuts {
+		a.batch = append(a.batch[:0], c)
+		for len(a.batch) < maxBlocks {
+			next, ok := a.more()
+			if !ok {
+				break
+			}
+			a.batch = append(a.batch, next)
+		}
+		a.work()
+		a.show(o)
+	}
+}
+
+// more is a cut that is waiting, if there is one.
+func (a *analysis) more() (cut, bool) {
+	select {
+	case c, ok := <-a.from.cuts:
+		return c, ok
+	default:
+		return cut{}, false
+	}
+}
+
+// work takes a batch to its end: into the average or aside.
+func (a *analysis) work() {
+	a.transform = a.transform[:0]
+	for _, c := range a.batch {
+		if c.block != nil {
+			a.transform = append(a.transform, c.block)
+		}
+	}
+	if !a.complete() {
+		a.engine.Transform(a.transform)
+	}
+	a.accepted = a.accepted[:0]
+	for _, c := range a.batch {
+		if a.complete() {
+			break // blocks behind the last one wanted are neither seen nor set aside
+		}
+		a.judge(c)
+	}
+	a.engine.Add(a.accepted)
+	for _, b := range a.transform {
+		a.from.free <- b
+	}
+	if a.complete() {
+		a.stop()
+	}
+}
+
+// judge counts a block and decides where it goes.
+func (a *analysis) judge(c cut) {
+	g := a.config.Rig.Grid
+	rateHz := a.config.Rig.Source.RateHz
+	before := c.start + int64(g.Block)*int64(g.Decimation)
+	a.timeS = float64(before) / rateHz
+	a.counts.Seen++
+	a.counts.Frames, a.counts.Gaps = before, c.gaps
+	if c.atLimit != nil {
+		a.counts.Overranges++
+	}
+	if c.overload {
+		a.counts.Overloads++
+	}
+	if a.config.Only == nil {
+		a.raise(watch.Evidence{
+			Block: c.index, StartS: float64(c.start) / rateHz, EndS: a.timeS,
+			Lost: c.lost, AtLimit: c.atLimit,
+		})
+	}
+	if c.block == nil {
+		a.counts.SetAside++
+		return
+	}
+	a.counts.Averaged++
+	a.accepted = append(a.accepted, c.block)
+}
+
+func (a *analysis) raise(e watch.Evidence) {
+	n := len(a.events)
+	a.events = a.watch.Judge(a.events, e)
+	if a.config.OnEvent == nil {
+		return
+	}
+	for _, event := range a.events[n:] {
+		a.config.OnEvent(event)
+	}
+}
+
+// complete tells whether as many blocks are averaged as were asked for.
+func (a *analysis) complete() bool {
+	return a.config.Blocks > 0 && a.counts.Averaged >= a.config.Blocks
+}
+
+// show gives progress, and a snapshot to the observer when it is waiting for one and it is time.
+func (a *analysis) show(o *observer) {
+	if a.config.OnProgress != nil {
+		a.config.OnProgress(a.counts)
+	}
+	if time.Since(a.shown) < refreshInterval {
+		return
+	}
+	select {
+	case v := <-o.free:
+		a.shown = time.Now()
+		a.viewTo(v)
+		o.ready <- v
+	default:
+	}
+}
+
+// viewTo writes the present state into v.
+func (a *analysis) viewTo(v *view) {
+	a.average.SnapshotTo(v.snapshot)
+	v.counts, v.timeS = a.counts, a.timeS
+	v.standing = a.watch.Standing(v.standing[:0])
+}
+
+// result is the outcome. The goroutines must have ended.
+func (a *analysis) result(t *intake) *Result {
+	v := newView(a.config.Rig)
+	if !a.complete() {
+		a.counts.Frames, a.counts.Gaps = t.frames, t.gaps
+	}
+	a.viewTo(v)
+	j := newJudge(a.config.Rig)
+	estimates := estimate.New(shapeOf(a.config.Rig), drivingPoints(a.config.Rig))
+	verdict := j.verdict(v, estimates)
+	return &Result{
+		Counts: a.counts, TimeS: a.timeS, Snapshot: v.snapshot, Estimates: estimates,
+		Progress: &j.progress, Verdict: verdict, Events: a.events,
+	}
+}

@@ -1,0 +1,246 @@
+package monitor
+
+import (
+	"math"
+
+	"shakerwatch/acquire/decimate"
+	"shakerwatch/acquire/rig"
+	"shakerwatch/estimate/watch"
+	"shakerwatch/spectra"
+)
+
+// A cut is one block of the grid, in order, with what is known of it before its transform.
+type cut struct {
+	index    int64
+	start    int64          // its first source frame
+	block    *spectra.Block // nil when it is not to be averaged
+	lost     watch.Lost     // lost frames that it touches
+	atLimit  []bool         // by channel; nil when none reached its limit
+	overload bool           // no memory was free: the arithmetic is too slow
+	gaps     int64          // stretches of lost frames up to here
+}
+
+// intake turns chunks into engineering units, decimates them and cuts them into blocks.
+type intake struct {
+	from *capture
+	cuts chan cut
+	free chan *spectra.Block
+	live bool
+	only map[int64]bool // starts of the blocks wanted, whatever is wrong with them; nil is all good ones
+
+	rateHz  float64 // of the source
+	factors []float64
+	grid    rig.Grid
+	half    int64 // the decimator's half length, source frames
+
+	filter  *decimate.Filter
+	cutter  *spectra.Cutter
+	meter   *meter
+	lost    marks
+	atLimit []marks // by channel
+	pending []cut   // in order
+
+	frames    int64 // source frames taken, lost ones among them
+	gaps      int64 // stretches of lost frames so far
+	gapBefore bool  // the newest frame was a lost one
+	scaled    []float64
+	analysis  []float64 // frames that left the decimator
+	zeros     []float64
+}
+
+// Memory for blocks between intake and average: enough to keep all workers busy and to ride out a
+// slow moment, within a bound on memory.
+const (
+	minBlocks     = 3
+	maxBlocks     = 16
+	blockMemory   = 256 << 20 // bytes
+	maxCuts       = 1024      // blocks without memory may wait, too
+	zeroFrames    = 256
+	bytesPerFloat = 8
+)
+
+func newIntake(c Config, from *capture) *intake {
+	r, shape := c.Rig, shapeOf(c.Rig)
+	n := shape.Channels()
+	t := &intake{
+		from:    from,
+		cuts:    make(chan cut, maxCuts),
+		live:    c.Live,
+		only:    startSet(c.Only),
+		rateHz:  r.Source.RateHz,
+		grid:    r.Grid,
+		half:    int64(decimate.HalfLength(r.Grid.Decimation)),
+		filter:  decimate.New(r.Grid.Decimation, n),
+		cutter:  spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop),
+		meter:   newMeter(r, c.OnLevels),
+		atLimit: make([]marks, n),
+		zeros:   make([]float64, zeroFrames*n),
+	}
+	for _, ch := range channels(r) {
+		t.factors = append(t.factors, ch.Scale())
+	}
+	perBlock := bytesPerFloat * (n*r.Grid.Block + 2*n*shape.Lines)
+	count := min(max(blockMemory/perBlock, minBlocks), maxBlocks)
+	t.free = make(chan *spectra.Block, count)
+	for range count {
+		t.free <- spectra.NewBlock(shape, r.Grid.Block)
+	}
+	return t
+}
+
+// run takes chunks until there are no more, then closes cuts.
+func (t *intake) run() {
+	defer close(t.cuts)
+	for c := range t.from.chunks {
+		if c.lost > 0 {
+			t.skip(c.lost)
+			continue
+		}
+		t.take(c.samples)
+		t.from.free <- c.samples[:cap(c.samples)]
+	}
+	t.analysis = t.filter.Flush(t.analysis[:0])
+	t.cut(t.analysis)
+	t.handOn(math.MaxInt64)
+}
+
+// take takes captured frames.
+func (t *intake) take(frames []float64) {
+	n := len(t.factors)
+	t.meter.add(frames, t.frames, t.atLimit)
+	t.frames += int64(len(frames) / n)
+	t.gapBefore = false
+
+	t.scaled = append(t.scaled[:0], frames...)
+	for at := 0; at < len(t.scaled); at += n {
+		frame := t.scaled[at : at+n]
+		for ch, factor := range t.factors {
+			frame[ch] *= factor
+		}
+	}
+	t.analysis = t.filter.Append(t.analysis[:0], t.scaled)
+	t.cut(t.analysis)
+	t.meter.show(float64(t.frames)/t.rateHz, float64(t.cutter.Filled())/float64(t.grid.Block))
+}
+
+// skip takes lost frames, which the decimator sees as zeros.
+func (t *intake) skip(frames int64) {
+	t.lost.add(t.frames, t.frames+frames)
+	t.frames += frames
+	if !t.gapBefore {
+		t.gaps++
+		t.gapBefore = true
+	}
+	var silent int64
+	t.analysis, silent = t.filter.AppendZeros(t.analysis[:0], frames)
+	t.cut(t.analysis)
+	for ; silent > 0; silent -= min(silent, zeroFrames) {
+		t.cut(t.zeros[:int(min(silent, zeroFrames))*len(t.factors)])
+	}
+}
+
+// cut takes analysis frames and hands on every block that they complete.
+func (t *intake) cut(frames []float64) {
+	for len(frames) > 0 {
+		frames = frames[t.cutter.Put(frames):]
+		if t.cutter.Full() {
+			t.enqueue(t.cutter.Index())
+			t.cutter.Advance()
+			t.handOn(t.frames)
+		}
+	}
+	t.handOn(t.frames)
+}
+
+// enqueue takes the block that is in the cutter. Whether a lost frame touches it is known only
+// when the source has gone on for another half length of the decimator.
+func (t *intake) enqueue(index int64) {
+	c := cut{index: index, start: index * t.hopFrames()}
+	if t.before(c) > t.frames {
+		return // its last sample lies in the source, but not every frame that it stands for
+	}
+	if t.wanted(&c) {
+		c.block = t.memory()
+		c.overload = c.block == nil
+	}
+	if c.block != nil {
+		c.block.Index, c.block.Start = c.index, c.start
+		t.cutter.CopyTo(c.block.Samples)
+	}
+	t.pending = append(t.pending, c)
+}
+
+// handOn hands on the pending blocks about which all is known when the source is known up to a
+// frame.
+func (t *intake) handOn(known int64) {
+	n := 0
+	for ; n < len(t.pending) && t.before(t.pending[n])+t.half <= known; n++ {
+		c := t.pending[n]
+		if !t.wanted(&c) {
+			c.overload = false
+			if c.block != nil {
+				t.free <- c.block
+				c.block = nil
+			}
+		}
+		c.gaps = t.gaps
+		t.cuts <- c
+		next := c.start + t.hopFrames()
+		t.lost.forget(next - t.half)
+		for ch := range t.atLimit {
+			t.atLimit[ch].forget(next)
+		}
+	}
+	t.pending = t.pending[:copy(t.pending, t.pending[n:])]
+}
+
+func (t *intake) hopFrames() int64 { return int64(t.grid.Hop) * int64(t.grid.Decimation) }
+
+// before is the source frame behind the block's last one.
+func (t *intake) before(c cut) int64 {
+	return c.start + int64(t.grid.Block)*int64(t.grid.Decimation)
+}
+
+// wanted writes what is known against c into it and tells whether it is to be averaged.
+func (t *intake) wanted(c *cut) bool {
+	if s, ok := t.lost.in(c.start-t.half, t.before(*c)+t.half); ok {
+		c.lost = watch.Lost{StartS: float64(s.from) / t.rateHz, Frames: s.before - s.from}
+	}
+	for ch := range t.atLimit {
+		if _, ok := t.atLimit[ch].in(c.start, t.before(*c)); ok {
+			if c.atLimit == nil {
+				c.atLimit = make([]bool, len(t.atLimit))
+			}
+			c.atLimit[ch] = true
+		}
+	}
+	if t.only != nil {
+		return t.only[c.start]
+	}
+	return c.lost.Frames == 0 && c.atLimit == nil
+}
+
+// memory is a free block. Live, there may be none; else it waits for one.
+func (t *intake) memory() *spectra.Block {
+	if !t.live {
+		return <-t.free
+	}
+	select {
+	case b := <-t.free:
+		return b
+	default:
+		return nil
+	}
+}
+
+// startSet is nil for nil starts.
+func startSet(starts []int64) map[int64]bool {
+	if starts == nil {
+		return nil
+	}
+	set := make(map[int64]bool, len(starts))
+	for _, s := range starts {
+		set[s] = true
+	}
+	return set
+}
