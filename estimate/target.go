@@ -117,7 +117,7 @@ func averagesNeeded(err, target float64, e *Estimates) float64 {
 	}
 	ratio := err / target
 	needed := q + (ne-q)*ratio*ratio
-	blocks := math.Ceil(needed*float64(e.Averages)/ne)
+	blocks := math.Ceil(needed * float64(e.Averages) / ne)
 	if !(blocks < maxBlocks) {
 		return math.NaN()
 	}
