@@ -5,12 +5,15 @@ import (
 	"hash/fnv"
 	"math"
 	"math/rand/v2"
+	"sync/atomic"
+
+	"gonum.org/v1/gonum/floats"
 
 	"shakerwatch/acquire/rig"
 )
 
 // A Source delivers the frames of a rig on the simulated structure, without end and as fast as they
-// are read. It never returns an error. It serves one goroutine at a time.
+// are read. It never returns an error. It serves one goroutine at a time, but for SetDrive.
 //
 // Equal rigs and seeds give equal bits on one processor architecture, however the frames are read.
 type Source struct {
@@ -18,8 +21,9 @@ type Source struct {
 	channels int
 	plant    *stepper
 	drives   []drive
-	sensors  []sensor  // of the plant's outputs
-	outputs  []float64 // N and m/s² along positive axes, one frame
+	sensors  []sensor      // of the plant's outputs
+	outputs  []float64     // N and m/s² along positive axes, one frame
+	level    atomic.Uint64 // bits of the share of the drives that reaches the shakers
 }
 
 const (
@@ -73,6 +77,7 @@ func newSource(r *rig.Rig, l layout, seed uint64) *Source {
 		plant:    newStepper(couple(l.structure, l.shakers, l.sensors), 1/(rateHz*float64(sub)), sub),
 		outputs:  make([]float64, len(r.Forces)+len(r.Responses)),
 	}
+	s.SetDrive(1)
 	for i, c := range r.Forces {
 		b := driveBand(rateHz, topHz, l.shakers[i].currentRMSA)
 		s.drives = append(s.drives, newNoiseDrive(b, stream(seed, "drive "+c.Name)))
@@ -107,6 +112,10 @@ func stream(seed uint64, label string) *rand.Rand {
 	return rand.New(rand.NewPCG(seed, h.Sum64()))
 }
 
+// SetDrive turns all drives to a share of their full level, 0 to 1, from the next frame on. It may
+// be called while another goroutine reads.
+func (s *Source) SetDrive(level float64) { s.level.Store(math.Float64bits(level)) }
+
 // RateHz is the number of frames per second.
 func (s *Source) RateHz() float64 { return s.rateHz }
 
@@ -124,8 +133,13 @@ func (s *Source) Read(dst []float64) (n int, err error) {
 
 // frame puts the next frame into dst.
 func (s *Source) frame(dst []float64) {
+	level := math.Float64frombits(s.level.Load())
 	for i, d := range s.drives {
-		d.next(s.plant.input(i))
+		currents := s.plant.input(i)
+		d.next(currents)
+		if level != 1 {
+			floats.Scale(level, currents)
+		}
 	}
 	s.plant.step(s.outputs)
 	clear(dst)
