@@ -121,12 +121,16 @@ func (c *check) each(do func(ch int), list ...Stage) {
 
 // density is a channel's at line k, N²/Hz or (m/s²)²/Hz. The stage must have been measured.
 func (c *check) density(s Stage, ch, k int) float64 {
-	snapshot := c.snapshot(s)
-	q, p := snapshot.Forces, snapshot.Responses
+	return density(c.snapshot(s), ch, k)
+}
+
+// density is the density of a channel, forces first, at line k.
+func density(s *spectra.Snapshot, ch, k int) float64 {
+	q, p := s.Forces, s.Responses
 	if ch < q {
-		return real(snapshot.Gxx[(k*q+ch)*q+ch])
+		return real(s.Gxx[(k*q+ch)*q+ch])
 	}
-	return snapshot.Gyy[k*p+ch-q]
+	return s.Gyy[k*p+ch-q]
 }
 
 // lastStage is the last of the stages for which is tells true.
