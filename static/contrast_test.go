@@ -92,7 +92,7 @@ func TestContrast(t *testing.T) {
 			check("soft", back, leastText)
 			check("focus", back, leastCurve)
 		}
-		for _, state := range []string{"waiting", "settling", "averaging", "enough", "stop"} {
+		for _, state := range []string{"waiting", "settling", "averaging", "enough", "stop", "look"} {
 			check("#ffffff", state, leastText)
 		}
 		check("caution-ink", "caution-paper", leastText)

@@ -41,8 +41,8 @@ type browser struct {
 
 // sent is what a page has.
 type sent struct {
-	refresh, levels, run, event int64 // numbers
-	view                        view  // of refresh
+	refresh, levels, run, event, setup, findings int64 // numbers
+	view                                         view  // of refresh
 }
 
 func newBrowser(h *Hub, conn *websocket.Conn, logger *slog.Logger) *browser {
@@ -103,6 +103,9 @@ func (b *browser) heed(r request) {
 	if r.kind == finishAndEnd {
 		b.logger.Info("asked to finish")
 		b.hub.askFinish()
+	}
+	if r.kind == startMeasuring {
+		b.logger.Info("asked to measure", keyStage, r.stage, keyTaken, b.hub.askMeasure(r.stage))
 	}
 	select {
 	case b.wake <- struct{}{}:
@@ -177,6 +180,14 @@ func (h *Hub) news(s *sent, events bool, after int64) [][]byte {
 	if h.levels.number != s.levels {
 		s.levels = h.levels.number
 		list = append(list, h.levels.text)
+	}
+	if h.setup.state.number != s.setup {
+		s.setup = h.setup.state.number
+		list = append(list, h.setup.state.text)
+	}
+	if h.setup.findings.number != s.findings {
+		s.findings = h.setup.findings.number
+		list = append(list, h.setup.findings.text)
 	}
 	if h.run.number != s.run {
 		s.run = h.run.number

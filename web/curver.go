@@ -151,8 +151,10 @@ func appendInts(dst []byte, lines, array []int) []byte {
 
 // inDecibels is a curve of powers in dB.
 func inDecibels(power values) values {
-	return func(line int) float64 { return 10 * math.Log10(power(line)) }
+	return func(line int) float64 { return powerDecibels(power(line)) }
 }
+
+func powerDecibels(power float64) float64 { return 10 * math.Log10(power) }
 
 // decibels is a size in dB. It is -Inf for 0, which travels as unknown.
 func decibels(size float64) float64 { return 20 * math.Log10(size) }

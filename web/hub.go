@@ -32,6 +32,7 @@ type Hub struct {
 	finishing bool
 	ended     *string
 	events    eventLog
+	setup     setupDesk
 	wakes     map[chan struct{}]bool // one for each browser, each with room for one
 }
 
@@ -56,6 +57,7 @@ func NewHub(r *rig.Rig, kind string) *Hub {
 		finish:      make(chan struct{}),
 		now:         time.Now,
 		wakes:       make(map[chan struct{}]bool),
+		setup:       setupDesk{proceed: make(chan struct{}, 1)},
 	}
 	h.first = h.shape.whole(points)
 	h.results = results{

@@ -98,7 +98,7 @@ func TestRefreshCarriesTheEstimates(t *testing.T) {
 	if row := e.MultipleCoherence[200*14 : 201*14]; row[worst[200]] != slices.Min(row) {
 		t.Errorf("response %d is said to be the worst at line 200", worst[200])
 	}
-	if names := m.View.Names; names["response.size"][0] != "A4z / S2" || names["coherence.shown"][1] != hostile || names["reciprocity.ab"][0] != "at S1 from S2" {
+	if names := m.View.Names; names["response.size"][0] != "A4z/S2" || names["coherence.shown"][1] != hostile || names["reciprocity.ab"][0] != "at S1 from S2" {
 		t.Errorf("names %v", names)
 	}
 	if m.Status.Averaged != 30 || m.Status.Worst == "" || *m.Status.WorstError != f.progress.Errors[f.progress.Worst] {
@@ -160,10 +160,38 @@ func TestRefreshThinsToTheBandThatIsShown(t *testing.T) {
 	f := newFeed(t, 1, 2, 2401)
 	h := NewHub(f.rig, "demo")
 	f.add(10)
-	f.refresh(h)
+	_, e := f.refresh(h)
 	whole := h.refreshFor(t, h.first)
 	if n := len(whole.curve(t, "response.size")); whole.View.Step != 3 || n != 801 {
 		t.Errorf("the whole band has %d points of %d lines", n, whole.View.Step)
+	}
+	bounds := func(values []*float64) (lo, hi float64) {
+		lo, hi = math.Inf(1), math.Inf(-1)
+		for _, v := range values {
+			if v != nil {
+				lo, hi = min(lo, *v), max(hi, *v)
+			}
+		}
+		return lo, hi
+	}
+	size := make([]*float64, e.Lines)
+	for k := range size {
+		v := decibels(cmplx.Abs(e.H[k*2]))
+		size[k] = &v
+	}
+	lo, hi := bounds(whole.curve(t, "response.size"))
+	if wantLo, wantHi := bounds(size); math.Abs(lo-wantLo) > 0.01 || math.Abs(hi-wantHi) > 0.01 {
+		t.Errorf("thinned, the frequency response reaches from %g to %g dB, want %g to %g", lo, hi, wantLo, wantHi)
+	}
+	force := read[[][]*float64](t, whole.Curves["forces.spectrum"])[0]
+	lo, hi = bounds(force)
+	wantLo, wantHi := powerDecibels(slices.Min(e.PrincipalForces)), powerDecibels(slices.Max(e.PrincipalForces)) // the same with one force
+	if math.Abs(lo-wantLo) > 0.01 || math.Abs(hi-wantHi) > 0.01 {
+		t.Errorf("thinned, the force spectrum reaches from %g to %g dB, want %g to %g", lo, hi, wantLo, wantHi)
+	}
+	lo, _ = bounds(whole.curve(t, "coherence.worst"))
+	if want := slices.Min(e.MultipleCoherence); math.Abs(lo-want) > 1e-4 {
+		t.Errorf("thinned, the worst coherence is %g, want %g", lo, want)
 	}
 	v := h.first
 	h.shape.band(&v, 100, 200)

@@ -5,4 +5,6 @@ const (
 	keyError   = "error"
 	keyBrowser = "browser" // its address
 	keyHost    = "host"
+	keyStage   = "stage"
+	keyTaken   = "taken"
 )

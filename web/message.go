@@ -13,6 +13,8 @@ import (
 //	refresh   status, the view shown and its curves; curver.go names them, results.go adds the rest
 //	levels    the channel levels
 //	events    events behind those that the page has; eventlog.go
+//	setup     how far a setup check is, in place of refresh; setupmessage.go
+//	findings  of the setup check, so far
 //	run       whether the run is finishing or has ended
 //
 // A number that cannot be had is null.
@@ -134,7 +136,7 @@ func newNames(r *rig.Rig, pairs [][2]int) names {
 
 // frf names the frequency response from a force to a response.
 func (n names) frf(response, force int) string {
-	return n.responses[response] + " / " + n.forces[force]
+	return n.responses[response] + "/" + n.forces[force]
 }
 
 // view is v as a page reads it, with the names of its curves.

@@ -210,6 +210,8 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 	w.Picture("finish")
 	w.Press(kb.Enter) // what has the focus is to stay
 	w.Until(`!document.getElementById("ask").open`)
+	w.Choose("#choices select", "2") // by the answer all that was asked before has come
+	w.Until(`document.querySelector("#plot-response .curves").textContent.includes("A3z/S1")`)
 	select {
 	case <-h.Finish():
 		t.Fatal("finished without being told to")
@@ -225,7 +227,7 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 
 	before := series(w, "response", 2)
 	w.Choose("#choices select", "3")
-	w.Until(`document.querySelector("#plot-response .curves").textContent.includes("A4z / S1")`)
+	w.Until(`document.querySelector("#plot-response .curves").textContent.includes("A4z/S1")`)
 	after := series(w, "response", 2)
 	if *before[100][1] == *after[100][1] {
 		t.Error("another frequency response was chosen after the end, and the same is shown")

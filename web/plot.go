@@ -46,7 +46,7 @@ type curve struct {
 	Role   string `json:"role"`  // decides the colour
 	Dash   dash   `json:"dash"`
 	Unit   string `json:"unit"`   // for readouts
-	Weight weight `json:"weight"` // empty is normal
+	Weight stroke `json:"weight"` // empty is normal
 	Quiet  bool   `json:"quiet"`  // no line: an edge of a band
 	pane   int
 }
@@ -60,12 +60,12 @@ const (
 	dotted dash = "dotted"
 )
 
-// A weight is how heavy a curve's line is.
-type weight string
+// A stroke is how heavy a curve's line is.
+type stroke string
 
 const (
-	bold weight = "bold"
-	fine weight = "fine"
+	bold stroke = "bold"
+	fine stroke = "fine"
 )
 
 // single is the index of a curve that is not one of a list.

@@ -7,20 +7,24 @@ import (
 	"fmt"
 	"io"
 	"math"
+
+	"shakerwatch/estimate/setup"
 )
 
 // What a page may ask.
 const (
-	selectView   = "select" // show this view from now on
-	sendEvents   = "events" // send the events behind a number, and all later ones as they come
-	finishAndEnd = "finish" // end the run and save its results
+	selectView     = "select"  // show this view from now on
+	sendEvents     = "events"  // send the events behind a number, and all later ones as they come
+	finishAndEnd   = "finish"  // end the run or the setup check and save its results
+	startMeasuring = "measure" // of a setup check: the rig is as this stage wants it
 )
 
 // A request is what a page asks.
 type request struct {
 	kind  string
-	view  view  // of selectView
-	after int64 // of sendEvents
+	view  view        // of selectView
+	after int64       // of sendEvents
+	stage setup.Stage // of startMeasuring
 }
 
 // wireRequest is a request as it comes. Fields that belong to another kind of request are ignored.
@@ -33,6 +37,7 @@ type wireRequest struct {
 	FromHz    *float64 `json:"from_hz"`   // null: from the bottom
 	ToHz      *float64 `json:"to_hz"`     // null: to the top
 	After     int64    `json:"after"`     // number of the last event that the page has
+	Stage     string   `json:"stage"`     // code
 }
 
 // parseRequest reads one message of a page. The error says what is wrong with it.
@@ -54,8 +59,20 @@ func parseRequest(text []byte, s shape) (request, error) {
 		return request{kind: sendEvents, after: max(w.After, 0)}, nil
 	case finishAndEnd:
 		return request{kind: finishAndEnd}, nil
+	case startMeasuring:
+		stage, err := w.stage()
+		return request{kind: startMeasuring, stage: stage}, err
 	}
 	return request{}, fmt.Errorf("message from a page: unknown type %.20q", w.Type)
+}
+
+func (w *wireRequest) stage() (setup.Stage, error) {
+	for _, stage := range setup.Stages() {
+		if w.Stage == stage.String() {
+			return stage, nil
+		}
+	}
+	return 0, fmt.Errorf("message from a page: unknown stage %.20q", w.Stage)
 }
 
 func (w *wireRequest) view(s shape) (view, error) {

@@ -1,8 +1,11 @@
 package web
 
 import (
+	"slices"
 	"strings"
 	"testing"
+
+	"shakerwatch/estimate/setup"
 )
 
 var testShape = shape{lines: 801, responses: 14, forces: 2, pairs: [][2]int{{0, 1}}, spacingHz: 0.5}
@@ -35,6 +38,7 @@ func TestParseRequest(t *testing.T) {
 		{"events", `{"type":"events","after":17}`, request{kind: sendEvents, after: 17}},
 		{"events from before the first", `{"type":"events","after":-5}`, request{kind: sendEvents}},
 		{"finish", ` {"type":"finish"} `, request{kind: finishAndEnd}},
+		{"measure", `{"type":"measure","stage":"low"}`, request{kind: startMeasuring, stage: setup.Low}},
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
@@ -60,6 +64,9 @@ func TestParseRequestRefuses(t *testing.T) {
 		{"a pair that is not there", `{"type":"select","pair":1}`, "pair 1 of 1"},
 		{"a coherence that is not there", `{"type":"select","coherence":[0,99]}`, "coherence 99 of 14"},
 		{"too many", `{"type":"select","coherence":[0,1,2,3,4,5,6]}`, "at most 6"},
+		{"a stage that is not there", `{"type":"measure","stage":"full"}`, `unknown stage "full"`},
+		{"a stage by its number", `{"type":"measure","stage":0}`, "number"},
+		{"no stage", `{"type":"measure"}`, `unknown stage ""`},
 		{"half an index", `{"type":"select","response":0.5}`, "number 0.5"},
 	}
 	for _, test := range tests {
@@ -87,6 +94,7 @@ func FuzzParseRequest(f *testing.F) {
 		`{"type":"select","response":3,"force":1,"pair":0,"coherence":[5,2],"from_hz":100,"to_hz":null}`,
 		`{"type":"select","from_hz":1e308,"to_hz":-1e308}`,
 		`{"type":"events","after":9223372036854775807}`,
+		`{"type":"measure","stage":"muted"}`, `{"type":"measure","stage":"\u0000"}`, `{"type":"measure","stage":null}`,
 		`{"type":"finish"}`, `{}`, `[]`, `null`, `{"type":`, "\x00\xff",
 	} {
 		f.Add([]byte(text), 801, 14, 2, 1)
@@ -98,6 +106,9 @@ func FuzzParseRequest(f *testing.F) {
 			pairs: make([][2]int, abs(pairCount)%4), spacingHz: 0.5,
 		}
 		r, err := parseRequest(text, s)
+		if err == nil && r.kind == startMeasuring && !slices.Contains(setup.Stages(), r.stage) {
+			t.Fatalf("stage %d does not exist", r.stage)
+		}
 		if err != nil || r.kind != selectView {
 			return
 		}

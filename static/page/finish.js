@@ -9,6 +9,11 @@ const ended = document.getElementById("ended");
 let open = false;
 let finishing = false;
 let over = false;
+let words = {
+  button: "Finish and save…",
+  busy: "Finishing…",
+  over: "Run ended",
+};
 
 // build sets what a confirmed finish does.
 export function build(finish) {
@@ -28,11 +33,22 @@ export function take(message) {
   finishing = message.finishing;
   over = message.ended !== null;
   if (over) {
-    put(ended, `Run ended. ${message.ended}`);
+    put(ended, `${words.over}. ${message.ended}`);
     ended.hidden = false;
   }
   draw();
   return over;
+}
+
+// ofSetup has it speak of a setup check in place of a run.
+export function ofSetup() {
+  words = { button: "End the check…", busy: "Ending…", over: "Setup check ended" };
+  put(document.getElementById("ask-title"), "End the setup check?");
+  put(document.getElementById("ask-text"), "Stages that were not measured stay unknown. What was measured so far is kept.");
+  put(document.getElementById("ask-running"), "Shakers that run go on running:");
+  put(document.getElementById("ask-stay"), "Go on checking");
+  put(document.getElementById("ask-finish"), "End the check");
+  draw();
 }
 
 // link says whether the program can be reached.
@@ -42,7 +58,7 @@ export function link(isOpen) {
 }
 
 function draw() {
-  put(button, over ? "Run ended" : finishing ? "Finishing…" : "Finish and save…");
+  put(button, over ? words.over : finishing ? words.busy : words.button);
   button.disabled = !open || finishing || over;
   if (button.disabled && dialog.open) {
     dialog.close("stay");

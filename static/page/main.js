@@ -3,9 +3,11 @@
 import * as charts from "./charts.js";
 import * as choices from "./choices.js";
 import * as events from "./events.js";
+import * as findings from "./findings.js";
 import * as finish from "./finish.js";
 import * as freshness from "./freshness.js";
 import * as levels from "./levels.js";
+import * as setup from "./setup.js";
 import * as verdict from "./verdict.js";
 import { put } from "./format.js";
 import { connect } from "./socket.js";
@@ -36,6 +38,7 @@ const heard = {
       choices.build(message, (request) => socket.send(request));
       events.build(choices.look);
       finish.build(() => socket.send({ type: "finish" }));
+      setup.build((stage) => socket.send({ type: "measure", stage }));
       charts.build(message, choices.look);
     }
     socket.send({ type: "events", after: events.last() });
@@ -52,7 +55,15 @@ const heard = {
     levels.take(message);
   },
   events: events.add,
+  setup(message) {
+    document.documentElement.dataset.mode = "setup";
+    finish.ofSetup();
+    findings.stages(message.stages);
+    setup.take(message);
+  },
+  findings: findings.take,
   run(message) {
+    setup.finishing(message.finishing);
     if (finish.take(message)) {
       freshness.end();
       verdict.end();
@@ -71,7 +82,9 @@ const socket = connect(
   (message) => heard[message.type]?.(message),
   (link) => {
     finish.link(link.open);
-    verdict.age(freshness.told(link));
-    document.title = `${verdict.title()} · ${described?.title || "shakerwatch"}`;
+    const age = freshness.told(link);
+    verdict.age(age);
+    setup.link(link.open, age !== null);
+    document.title = `${setup.title() ?? verdict.title()} · ${described?.title || "shakerwatch"}`;
   },
 );
