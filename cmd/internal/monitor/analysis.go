@@ -166,6 +166,9 @@ func (a *analysis) viewTo(v *view) {
 	a.average.SnapshotTo(v.snapshot)
 	v.counts, v.timeS = a.counts, a.timeS
 	v.standing = a.watch.Standing(v.standing[:0])
+	if a.config.Trouble != nil {
+		v.standing = append(v.standing, a.config.Trouble()...)
+	}
 }
 
 // result is the outcome. The goroutines must have ended.
@@ -175,7 +178,7 @@ func (a *analysis) result(t *intake) *Result {
 		a.counts.Frames, a.counts.Gaps = t.frames, t.gaps
 	}
 	a.viewTo(v)
-	j := newJudge(a.config.Rig)
+	j := newJudge(a.config)
 	estimates := estimate.New(shapeOf(a.config.Rig), drivingPoints(a.config.Rig))
 	verdict := j.verdict(v, estimates)
 	return &Result{

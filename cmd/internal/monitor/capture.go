@@ -25,23 +25,35 @@ type capture struct {
 }
 
 // The ring between capture and intake. A fiftieth of a second is little enough for levels ten
-// times a second, and a second's worth rides out whatever the scheduler or the collector do.
+// times a second, and a second's worth rides out whatever the scheduler or the collector do. What a
+// live source sends in a burst is taken in up to a bound on memory and on time.
 const (
 	chunksPerSecond = 50
-	ringChunks      = 50
+	ringMinS        = 1
+	ringMaxS        = 120
+	ringMemory      = 64 << 20 // bytes
 )
+
+// ringChunks is the number of chunks of so many samples in a ring.
+func ringChunks(live bool, samples int) int {
+	if !live {
+		return ringMinS * chunksPerSecond
+	}
+	return min(max(ringMemory/(bytesPerFloat*samples), ringMinS*chunksPerSecond), ringMaxS*chunksPerSecond)
+}
 
 func newCapture(c Config) *capture {
 	frames := max(1, int(c.Rig.Source.RateHz/chunksPerSecond))
 	channels := channelsInUse(c.Rig)
+	count := ringChunks(c.Live, frames*len(channels))
 	k := &capture{
 		source: acquire.Select(c.Source, channels),
 		live:   c.Live,
-		chunks: make(chan chunk, 2*ringChunks+1), // each may follow a loss, and so may the end
-		free:   make(chan []float64, ringChunks),
+		chunks: make(chan chunk, 2*count+1), // each may follow a loss, and so may the end
+		free:   make(chan []float64, count),
 		spare:  make([]float64, frames*len(channels)),
 	}
-	for range ringChunks {
+	for range count {
 		k.free <- make([]float64, frames*len(channels))
 	}
 	return k
@@ -83,6 +95,9 @@ func (k *capture) run(ctx context.Context) {
 		k.chunks <- chunk{lost: lost}
 	}
 }
+
+// crowded tells whether more than half of the ring is taken.
+func (k *capture) crowded() bool { return 2*len(k.free) < cap(k.free) }
 
 // take gives a buffer to read into, and false when it is the spare one, whose frames are lost. It
 // waits only where the source can wait, too.

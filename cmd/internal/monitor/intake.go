@@ -2,6 +2,7 @@ package monitor
 
 import (
 	"math"
+	"time"
 
 	"shakerwatch/acquire/decimate"
 	"shakerwatch/acquire/rig"
@@ -27,6 +28,8 @@ type intake struct {
 	free chan *spectra.Block
 	live bool
 	only map[int64]bool // starts of the blocks wanted, whatever is wrong with them; nil is all good ones
+
+	onFrames func([]float64) // Config.OnFrames
 
 	rateHz  float64 // of the source
 	factors []float64
@@ -63,18 +66,19 @@ func newIntake(c Config, from *capture) *intake {
 	r, shape := c.Rig, shapeOf(c.Rig)
 	n := shape.Channels()
 	t := &intake{
-		from:    from,
-		cuts:    make(chan cut, maxCuts),
-		live:    c.Live,
-		only:    startSet(c.Only),
-		rateHz:  r.Source.RateHz,
-		grid:    r.Grid,
-		half:    int64(decimate.HalfLength(r.Grid.Decimation)),
-		filter:  decimate.New(r.Grid.Decimation, n),
-		cutter:  spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop),
-		meter:   newMeter(r, c.OnLevels),
-		atLimit: make([]marks, n),
-		zeros:   make([]float64, zeroFrames*n),
+		from:     from,
+		cuts:     make(chan cut, maxCuts),
+		live:     c.Live,
+		only:     startSet(c.Only),
+		onFrames: c.OnFrames,
+		rateHz:   r.Source.RateHz,
+		grid:     r.Grid,
+		half:     int64(decimate.HalfLength(r.Grid.Decimation)),
+		filter:   decimate.New(r.Grid.Decimation, n),
+		cutter:   spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop),
+		meter:    newMeter(r, c.OnLevels),
+		atLimit:  make([]marks, n),
+		zeros:    make([]float64, zeroFrames*n),
 	}
 	for _, ch := range channels(r) {
 		t.factors = append(t.factors, ch.Scale())
@@ -107,6 +111,9 @@ func (t *intake) run() {
 // take takes captured frames.
 func (t *intake) take(frames []float64) {
 	n := len(t.factors)
+	if t.onFrames != nil {
+		t.onFrames(frames)
+	}
 	t.meter.add(frames, t.frames, t.atLimit)
 	t.frames += int64(len(frames) / n)
 	t.gapBefore = false
@@ -220,18 +227,28 @@ func (t *intake) wanted(c *cut) bool {
 	return c.lost.Frames == 0 && c.atLimit == nil
 }
 
-// memory is a free block. Live, there may be none; else it waits for one.
+// memory is a free block. It waits for one, but live, no longer than the ring has room for what
+// comes meanwhile; then it returns nil.
 func (t *intake) memory() *spectra.Block {
 	if !t.live {
 		return <-t.free
 	}
-	select {
-	case b := <-t.free:
-		return b
-	default:
-		return nil
+	for {
+		select {
+		case b := <-t.free:
+			return b
+		default:
+		}
+		if t.from.crowded() {
+			return nil
+		}
+		time.Sleep(crowdedCheck)
 	}
 }
+
+// crowdedCheck is how often a wait for memory looks: many times in the second that the ring holds at
+// least.
+const crowdedCheck = 5 * time.Millisecond
 
 // startSet is nil for nil starts.
 func startSet(starts []int64) map[int64]bool {

@@ -14,6 +14,7 @@ import (
 	"shakerwatch/acquire"
 	"shakerwatch/acquire/rig"
 	"shakerwatch/estimate"
+	"shakerwatch/estimate/setup"
 	"shakerwatch/estimate/watch"
 	"shakerwatch/spectra"
 	"shakerwatch/web"
@@ -29,10 +30,23 @@ type Config struct {
 	// that is not live nothing is ever lost.
 	Live bool
 
+	// Interrupt ends a Read of the source that waits, once the run is to end. nil is for sources whose
+	// Read never waits long.
+	Interrupt func()
+
 	Blocks  int64   // end after so many averaged blocks; 0 is no end
 	Only    []int64 // average exactly the blocks with these starts, watch off; nil is the normal run
 	Workers int     // goroutines for the arithmetic; 0 is one a core
 
+	// Noise is a noise measurement of the rig: channels too near to it are named in the verdict's
+	// reasons. nil is none.
+	Noise *setup.Noise
+
+	// Trouble says what outside of the pipeline stands against the measurement, for the verdict's
+	// reasons. It may be called from several goroutines; nil is nothing.
+	Trouble func() []string
+
+	OnFrames   func(frames []float64) // what was captured of the channels in use, not to be kept
 	OnEvent    func(watch.Event)
 	OnLevels   func(web.Levels)
 	OnProgress func(Counts)
@@ -74,6 +88,9 @@ type Result struct {
 func Run(ctx context.Context, c Config) (*Result, error) {
 	ctx, stop := context.WithCancel(ctx)
 	defer stop()
+	if c.Interrupt != nil {
+		defer context.AfterFunc(ctx, c.Interrupt)()
+	}
 	if c.Workers == 0 {
 		c.Workers = runtime.GOMAXPROCS(0)
 	}

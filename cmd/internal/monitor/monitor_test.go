@@ -354,7 +354,7 @@ func TestObserverSeesTheEnd(t *testing.T) {
 
 // TestIntakeAllocatesNothing is the hot path from captured frames to a block that is handed on.
 func TestIntakeAllocatesNothing(t *testing.T) {
-	c := Config{Rig: newRig(t, 120, 4, 0.5), Source: newRecorded(10, 1)}
+	c := Config{Rig: newRig(t, 120, 4, 0.5), Source: newRecorded(10, 1), Live: true}
 	in := newIntake(c, newCapture(c))
 	frames := make([]float64, 250*3)
 	for i := range frames {

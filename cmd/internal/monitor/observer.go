@@ -5,6 +5,7 @@ import (
 
 	"shakerwatch/acquire/rig"
 	"shakerwatch/estimate"
+	"shakerwatch/estimate/setup"
 	"shakerwatch/spectra"
 	"shakerwatch/web"
 )
@@ -30,7 +31,7 @@ type observer struct {
 }
 
 func newObserver(c Config) *observer {
-	o := &observer{config: c, free: make(chan *view, 1), ready: make(chan *view, 1), judge: newJudge(c.Rig)}
+	o := &observer{config: c, free: make(chan *view, 1), ready: make(chan *view, 1), judge: newJudge(c)}
 	if c.OnRefresh != nil {
 		o.free <- newView(c.Rig)
 	}
@@ -54,17 +55,26 @@ func (o *observer) close() { close(o.ready) }
 // A judge turns views into verdicts.
 type judge struct {
 	rig      *rig.Rig
+	noise    *setup.Noise
 	target   estimate.Target
 	progress estimate.Progress
 }
 
-func newJudge(r *rig.Rig) *judge { return &judge{rig: r, target: estimate.NewTarget(r)} }
+func newJudge(c Config) *judge {
+	return &judge{rig: c.Rig, noise: c.Noise, target: estimate.NewTarget(c.Rig)}
+}
 
 // verdict fills e with the estimates of v and judges them.
 func (j *judge) verdict(v *view, e *estimate.Estimates) estimate.Verdict {
 	e.Update(v.snapshot)
 	j.progress.Update(e, j.target)
-	return estimate.Judge(e, &j.progress, j.target, v.standing, func(n int) string { return frfName(j.rig, n) })
+	standing := v.standing
+	if j.noise != nil {
+		if low := j.noise.LowSignal(j.rig, v.snapshot); low != "" {
+			standing = append(standing[:len(standing):len(standing)], low)
+		}
+	}
+	return estimate.Judge(e, &j.progress, j.target, standing, func(n int) string { return frfName(j.rig, n) })
 }
 
 func newStatus(r *rig.Rig, c Counts, timeS float64, s *spectra.Snapshot, p *estimate.Progress, v estimate.Verdict) web.Status {
