@@ -12,6 +12,7 @@ package estimate
 import (
 	"math"
 
+	"shakerwatch/acquire/rig"
 	"shakerwatch/spectra"
 )
 
@@ -47,6 +48,11 @@ type Estimates struct {
 	row    []complex128 // (q) scratch
 }
 
+// ShapeOf is the shape of the snapshots of a rig.
+func ShapeOf(r *rig.Rig) spectra.Shape {
+	return spectra.Shape{Lines: r.Grid.Lines, Forces: len(r.Forces), Responses: len(r.Responses)}
+}
+
 // New makes Estimates for snapshots of the given shape. It panics when points has not one element a
 // force.
 func New(shape spectra.Shape, points []DrivingPoint) *Estimates {
@@ -54,7 +60,7 @@ func New(shape spectra.Shape, points []DrivingPoint) *Estimates {
 		panic("estimate: one driving point a force, please")
 	}
 	l, p, q := shape.Lines, shape.Responses, shape.Forces
-	pairs := reciprocityPairs(points)
+	pairs := ReciprocityPairs(points)
 	return &Estimates{
 		Shape:             shape,
 		FrequencyHz:       make([]float64, l),

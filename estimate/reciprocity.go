@@ -4,12 +4,23 @@ import (
 	"math"
 	"math/cmplx"
 
+	"shakerwatch/acquire/rig"
 	"shakerwatch/spectra"
 )
 
-// reciprocityPairs lists the pairs a < b of forces that both have a driving-point response.
-func reciprocityPairs(points []DrivingPoint) [][2]int {
-	var pairs [][2]int
+// DrivingPoints are the driving points of the rig's forces.
+func DrivingPoints(r *rig.Rig) []DrivingPoint {
+	points := make([]DrivingPoint, len(r.Forces))
+	for i, response := range r.DrivingPoints() {
+		points[i] = DrivingPoint{Response: response, Sign: r.DrivingSign(i)}
+	}
+	return points
+}
+
+// ReciprocityPairs lists the pairs a < b of forces that both have a driving-point response. It is
+// never nil.
+func ReciprocityPairs(points []DrivingPoint) [][2]int {
+	pairs := [][2]int{}
 	for b := range points {
 		for a := range b {
 			if points[a].Response >= 0 && points[b].Response >= 0 {

@@ -72,9 +72,7 @@ func newFeed(t testing.TB, q, p, lines int) *feed {
 		target:   estimate.NewTarget(r),
 		block:    make([]complex128, lines*(p+q)),
 	}
-	for _, o := range drivingPoints(r) {
-		f.points = append(f.points, estimate.DrivingPoint{Response: o, Sign: 1})
-	}
+	f.points = estimate.DrivingPoints(r)
 	f.structure()
 	f.spare = f.estimates()
 	return f

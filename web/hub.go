@@ -47,8 +47,7 @@ func (n *numbered) set(text []byte) { n.text, n.number = text, n.number+1 }
 // NewHub makes the hub of a run on r, which it only reads. kind is the kind of source: "demo",
 // "soundcard", "pipe", or "recording" for a replay.
 func NewHub(r *rig.Rig, kind string) *Hub {
-	points := drivingPoints(r)
-	list := pairs(points)
+	list := estimate.ReciprocityPairs(estimate.DrivingPoints(r))
 	q, p, l := len(r.Forces), len(r.Responses), r.Grid.Lines
 	h := &Hub{
 		description: mustMarshal(describe(r, kind, rand.Text(), list)),
@@ -59,7 +58,7 @@ func NewHub(r *rig.Rig, kind string) *Hub {
 		wakes:       make(map[chan struct{}]bool),
 		setup:       setupDesk{proceed: make(chan struct{}, 1)},
 	}
-	h.first = h.shape.whole(points)
+	h.first = h.shape.whole(r.DrivingPoints())
 	h.results = results{
 		names: newNames(r, list),
 		curver: curver{

@@ -78,7 +78,7 @@ func plots(r *rig.Rig, target estimate.Target) []plot {
 		independencePlot(r.Forces),
 		responsePlot(),
 		forcesPlot(r.Forces),
-		reciprocityPlot(len(pairs(drivingPoints(r)))),
+		reciprocityPlot(len(estimate.ReciprocityPairs(estimate.DrivingPoints(r)))),
 		convergencePlot(target),
 	}
 	for i := range list {

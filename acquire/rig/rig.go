@@ -5,6 +5,8 @@
 // or what is computed from them.
 package rig
 
+import "slices"
+
 // A Rig is a rig file that was read and found free of mistakes, with every default filled in.
 // It is read-only once made.
 type Rig struct {
@@ -81,6 +83,9 @@ type Channel struct {
 	LimitV      float64 // volts at which the chain clips
 	Line        int     // of the channel's number in the file, for messages
 }
+
+// Channels are the forces, then the responses: the order of everything that is computed.
+func (r *Rig) Channels() []Channel { return slices.Concat(r.Forces, r.Responses) }
 
 // StandardGravity is 1 g in m/s², exact by definition (3rd General Conference on Weights and
 // Measures, 1901; ISO 80000-3).

@@ -147,7 +147,7 @@ func (r *Rig) writeWarnings(b *strings.Builder) {
 				f.Name, f.Point, f.Letter()))
 		}
 	}
-	for _, c := range slices.Concat(r.Forces, r.Responses) {
+	for _, c := range r.Channels() {
 		if c.LimitV > c.FullScaleV {
 			warnings = append(warnings, fmt.Sprintf(
 				"%s has its limit above full scale: only floating-point samples can reach it, so clipping of a sound card would go unseen",

@@ -27,7 +27,7 @@ func newCheck(r *rig.Rig, m []Measurement) *check {
 	target := estimate.NewTarget(r)
 	c := &check{
 		rig:       r,
-		channels:  channelsOf(r),
+		channels:  r.Channels(),
 		first:     target.First,
 		last:      target.Last,
 		spacingHz: r.Grid.SpacingHz,
@@ -46,22 +46,13 @@ func (c *check) take(m *Measurement) {
 	if !m.Stage.valid() {
 		panic("setup: no such stage")
 	}
-	if m.Snapshot != nil && m.Snapshot.Shape != shapeOf(c.rig) {
+	if m.Snapshot != nil && m.Snapshot.Shape != estimate.ShapeOf(c.rig) {
 		panic("setup: snapshot has another shape than the rig")
 	}
 	if m.Tally != nil && m.Tally.Channels() != len(c.channels) {
 		panic("setup: tally has another number of channels than the rig")
 	}
 	c.by[m.Stage] = m
-}
-
-// channelsOf are the rig's channels in the order of the pipeline: forces, then responses.
-func channelsOf(r *rig.Rig) []rig.Channel {
-	return append(append([]rig.Channel{}, r.Forces...), r.Responses...)
-}
-
-func shapeOf(r *rig.Rig) spectra.Shape {
-	return spectra.Shape{Lines: r.Grid.Lines, Forces: len(r.Forces), Responses: len(r.Responses)}
 }
 
 // tally is the stage's, nil when it has none or nothing was counted.

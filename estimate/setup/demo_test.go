@@ -14,9 +14,9 @@ import (
 // demo's sensors have, 4e-3 N and 2.5e-3 m/s² per root Hz, without its rise below 1 Hz.
 func offFrames(r *rig.Rig, seed uint64, frames int) []float64 {
 	rng := rand.New(rand.NewPCG(seed, 4))
-	list := make([]float64, 0, frames*len(channelsOf(r)))
+	list := make([]float64, 0, frames*len(r.Channels()))
 	for range frames {
-		for ch, c := range channelsOf(r) {
+		for ch, c := range r.Channels() {
 			density := 2.5e-3
 			if ch < len(r.Forces) {
 				density = 4e-3

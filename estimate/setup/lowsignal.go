@@ -23,7 +23,7 @@ func (n *Noise) LowSignal(r *rig.Rig, s *spectra.Snapshot) string {
 	bands := octaves(target.First, target.Last, r.Grid.SpacingHz)
 	var low []string
 	more := 0
-	for ch, channel := range channelsOf(r) {
+	for ch, channel := range r.Channels() {
 		weak := n.weakBands(s, ch, bands)
 		switch {
 		case weak == nil:

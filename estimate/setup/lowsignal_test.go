@@ -5,6 +5,7 @@ import (
 	"testing"
 
 	"shakerwatch/acquire/demo"
+	"shakerwatch/estimate"
 	"shakerwatch/spectra"
 )
 
@@ -12,7 +13,7 @@ import (
 // one octave are not.
 func TestLowSignal(t *testing.T) {
 	r := demo.Rig()
-	shape := shapeOf(r)
+	shape := estimate.ShapeOf(r)
 	n := &Noise{Force: make([]float64, shape.Lines*shape.Forces), Response: make([]float64, shape.Lines*shape.Responses)}
 	s := spectra.NewSnapshot(shape)
 	s.SpacingHz, s.Averages, s.EffectiveAverages = r.Grid.SpacingHz, 30, 28

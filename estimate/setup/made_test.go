@@ -8,6 +8,7 @@ import (
 	"testing"
 
 	"shakerwatch/acquire/rig"
+	"shakerwatch/estimate"
 	"shakerwatch/spectra"
 )
 
@@ -175,7 +176,7 @@ func (m *mass) next(x float64) float64 {
 // recordings are and clipped at full scale.
 func (s scene) digital(r *rig.Rig) []float64 {
 	frames := make([]float64, 0, len(s)*len(s[0]))
-	channels := channelsOf(r)
+	channels := r.Channels()
 	for n := range s[0] {
 		for ch, c := range channels {
 			v := s[ch][n] / c.Scale()
@@ -195,14 +196,14 @@ func measure(t testing.TB, r *rig.Rig, s Stage, frames []float64) Measurement {
 	tally := NewTally(r)
 	tally.Add(frames)
 
-	shape, n := shapeOf(r), len(channelsOf(r))
+	shape, n := estimate.ShapeOf(r), len(r.Channels())
 	values := spectra.Window(r.Analysis.Window).Values(r.Grid.Block)
 	average := spectra.NewAverage(shape, values, r.Grid.Hop, 1, r.Grid.RateHz)
 	transform := spectra.NewTransform(values)
 	cutter := spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop)
 	block := spectra.NewBlock(shape, r.Grid.Block)
 	scaled := slices.Clone(frames)
-	for ch, c := range channelsOf(r) {
+	for ch, c := range r.Channels() {
 		for i := ch; i < len(scaled); i += n {
 			scaled[i] *= c.Scale()
 		}

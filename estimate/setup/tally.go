@@ -55,7 +55,7 @@ type channelTally struct {
 // NewTally makes an empty tally of the channels of r, forces first.
 func NewTally(r *rig.Rig) *Tally {
 	t := &Tally{}
-	for _, ch := range channelsOf(r) {
+	for _, ch := range r.Channels() {
 		t.channels = append(t.channels, channelTally{volts: ch.FullScaleV, limit: ch.LimitV * clipShare})
 	}
 	t.kept = newReservoir(len(t.channels))

@@ -32,7 +32,7 @@ type analysis struct {
 func newAnalysis(c Config, from *intake, stop func()) *analysis {
 	g := c.Rig.Grid
 	window := spectra.Window(c.Rig.Analysis.Window).Values(g.Block)
-	average := spectra.NewAverage(shapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz)
+	average := spectra.NewAverage(estimate.ShapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz)
 	workers := spectra.NewWorkers(c.Workers)
 	return &analysis{
 		config:  c,
@@ -179,7 +179,7 @@ func (a *analysis) result(t *intake) *Result {
 	}
 	a.viewTo(v)
 	j := newJudge(a.config)
-	estimates := estimate.New(shapeOf(a.config.Rig), drivingPoints(a.config.Rig))
+	estimates := estimate.New(estimate.ShapeOf(a.config.Rig), estimate.DrivingPoints(a.config.Rig))
 	verdict := j.verdict(v, estimates)
 	return &Result{
 		Counts: a.counts, TimeS: a.timeS, Snapshot: v.snapshot, Estimates: estimates,

@@ -6,6 +6,7 @@ import (
 
 	"shakerwatch/acquire/decimate"
 	"shakerwatch/acquire/rig"
+	"shakerwatch/estimate"
 	"shakerwatch/estimate/watch"
 	"shakerwatch/spectra"
 )
@@ -63,7 +64,7 @@ const (
 )
 
 func newIntake(c Config, from *capture) *intake {
-	r, shape := c.Rig, shapeOf(c.Rig)
+	r, shape := c.Rig, estimate.ShapeOf(c.Rig)
 	n := shape.Channels()
 	t := &intake{
 		from:     from,
@@ -80,7 +81,7 @@ func newIntake(c Config, from *capture) *intake {
 		atLimit:  make([]marks, n),
 		zeros:    make([]float64, zeroFrames*n),
 	}
-	for _, ch := range channels(r) {
+	for _, ch := range r.Channels() {
 		t.factors = append(t.factors, ch.Scale())
 	}
 	perBlock := bytesPerFloat * (n*r.Grid.Block + 2*n*shape.Lines)

@@ -36,7 +36,7 @@ func newMeter(r *rig.Rig, publish func(web.Levels)) *meter {
 		window:  max(1, int(r.Source.RateHz/levelsPerSecond)),
 		publish: publish,
 	}
-	for _, ch := range channels(r) {
+	for _, ch := range r.Channels() {
 		m.volts = append(m.volts, ch.FullScaleV)
 		m.limit = append(m.limit, ch.LimitV*clipShare)
 		m.nominal = append(m.nominal, ch.LimitV)

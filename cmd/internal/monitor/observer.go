@@ -18,7 +18,7 @@ type view struct {
 	standing []string
 }
 
-func newView(r *rig.Rig) *view { return &view{snapshot: spectra.NewSnapshot(shapeOf(r))} }
+func newView(r *rig.Rig) *view { return &view{snapshot: spectra.NewSnapshot(estimate.ShapeOf(r))} }
 
 // An observer makes estimates of views, for whoever watches the run. While it is busy, the averaging
 // goes on without it.
@@ -42,7 +42,7 @@ func newObserver(c Config) *observer {
 func (o *observer) run() {
 	for v := range o.ready {
 		if o.spare == nil {
-			o.spare = estimate.New(shapeOf(o.config.Rig), drivingPoints(o.config.Rig))
+			o.spare = estimate.New(estimate.ShapeOf(o.config.Rig), estimate.DrivingPoints(o.config.Rig))
 		}
 		verdict := o.judge.verdict(v, o.spare)
 		o.spare = o.config.OnRefresh(newStatus(o.config.Rig, v.counts, v.timeS, v.snapshot, &o.judge.progress, verdict), o.spare)

@@ -17,11 +17,11 @@ type Folder struct {
 }
 
 // Open makes sure that results can be written to dir later, making it where it does not exist. A
-// folder that already holds results is refused and left untouched, unless replace.
-func Open(dir string, replace bool) (*Folder, error) {
+// folder that already holds one of the named files is refused and left untouched.
+func Open(dir string, names ...string) (*Folder, error) {
 	f := &Folder{dir: dir}
-	for _, name := range []string{EstimatesFile, SummaryFile, EventsFile} {
-		if _, err := os.Lstat(f.path(name)); err == nil && !replace {
+	for _, name := range names {
+		if _, err := os.Lstat(f.path(name)); err == nil {
 			return nil, fmt.Errorf("%s: it already holds results (%s): choose another folder, or add --replace", dir, name)
 		}
 	}

@@ -25,7 +25,7 @@ func names(t *testing.T, dir string) string {
 
 func TestFolderIsMadeAndTakenAway(t *testing.T) {
 	base := t.TempDir()
-	f, err := Open(filepath.Join(base, "a", "b"), false)
+	f, err := Open(filepath.Join(base, "a", "b"))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -40,7 +40,7 @@ func TestFolderIsMadeAndTakenAway(t *testing.T) {
 
 func TestFolderThatWasThereStays(t *testing.T) {
 	dir := t.TempDir()
-	f, err := Open(dir, false)
+	f, err := Open(dir)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -56,14 +56,14 @@ func TestFolderWithResultsIsRefused(t *testing.T) {
 		if err := os.WriteFile(filepath.Join(dir, name), []byte("old"), 0o644); err != nil {
 			t.Fatal(err)
 		}
-		if _, err := Open(dir, false); err == nil || !strings.Contains(err.Error(), "already holds results") {
+		if _, err := Open(dir, EventsFile, name); err == nil || !strings.Contains(err.Error(), "already holds results") {
 			t.Errorf("%s: error %v", name, err)
 		}
 		if text, _ := os.ReadFile(filepath.Join(dir, name)); string(text) != "old" {
 			t.Errorf("%s was touched", name)
 		}
-		if _, err := Open(dir, true); err != nil {
-			t.Errorf("%s: with replace: %v", name, err)
+		if _, err := Open(dir, "other"); err != nil {
+			t.Errorf("%s: where it does not matter: %v", name, err)
 		}
 	}
 }
@@ -74,7 +74,7 @@ func TestFolderThatCannotBe(t *testing.T) {
 		t.Fatal(err)
 	}
 	for _, dir := range []string{file, filepath.Join(file, "below")} {
-		if _, err := Open(dir, false); err == nil || strings.Contains(err.Error(), "\n") {
+		if _, err := Open(dir); err == nil || strings.Contains(err.Error(), "\n") {
 			t.Errorf("%s: error %v, want one line", dir, err)
 		}
 	}
@@ -82,7 +82,7 @@ func TestFolderThatCannotBe(t *testing.T) {
 
 func TestHalfAFileIsNeverSeen(t *testing.T) {
 	dir := t.TempDir()
-	f, err := Open(dir, false)
+	f, err := Open(dir)
 	if err != nil {
 		t.Fatal(err)
 	}

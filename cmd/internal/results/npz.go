@@ -3,6 +3,7 @@ package results
 import (
 	"archive/zip"
 	"encoding/binary"
+	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -155,4 +156,29 @@ func floatBits(v float64) uint64 {
 		return 0x7ff8_0000_0000_0000
 	}
 	return math.Float64bits(v)
+}
+
+// parseFloats reads the values of a .npy member of type <f8 in C order, whatever its shape. The
+// library that the tests use for this panics on some damaged files.
+func parseFloats(npy []byte) ([]float64, error) {
+	const before = len("\x93NUMPY\x01\x00") + 2
+	if len(npy) < before || string(npy[:before-2]) != "\x93NUMPY\x01\x00" {
+		return nil, errors.New("no .npy of version 1.0")
+	}
+	length := int(binary.LittleEndian.Uint16(npy[before-2:]))
+	if len(npy) < before+length {
+		return nil, errors.New("it ends within its header")
+	}
+	header, values := string(npy[before:before+length]), npy[before+length:]
+	if !strings.Contains(header, "'<f8'") || !strings.Contains(header, "'fortran_order': False") {
+		return nil, fmt.Errorf("header %q is not that of <f8 in C order", strings.TrimSpace(header))
+	}
+	if len(values)%bytesPerValue != 0 {
+		return nil, errors.New("it ends within a value")
+	}
+	floats := make([]float64, len(values)/bytesPerValue)
+	for i := range floats {
+		floats[i] = math.Float64frombits(binary.LittleEndian.Uint64(values[bytesPerValue*i:]))
+	}
+	return floats, nil
 }

@@ -32,6 +32,7 @@ type summary struct {
 	AveragesNeeded    estimate.Number  `json:"averages_needed"`
 	Gaps              int64            `json:"gaps"`
 	Overranges        int64            `json:"overranges"`
+	Noise             *Noise           `json:"noise"` // null without a noise measurement
 }
 
 type analysis struct {
@@ -45,7 +46,7 @@ type analysis struct {
 	Excitation    string  `json:"excitation"`
 }
 
-func writeSummary(w io.Writer, r *rig.Rig, s Source, result *monitor.Result) error {
+func writeSummary(w io.Writer, r *rig.Rig, s Source, noise *Noise, result *monitor.Result) error {
 	hop := &r.Grid.Hop
 	if r.Analysis.Excitation != "random" {
 		hop = nil
@@ -74,6 +75,7 @@ func writeSummary(w io.Writer, r *rig.Rig, s Source, result *monitor.Result) err
 		AveragesNeeded:    result.Progress.AveragesNeeded,
 		Gaps:              result.Gaps,
 		Overranges:        result.Overranges,
+		Noise:             noise,
 	})
 }
 
