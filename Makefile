@@ -5,32 +5,41 @@ PYTHON  := /usr/bin/python3# Debian's, which has Debian's NumPy and SciPy
 SUDO    := $(shell [ "$$(id -u)" = 0 ] || echo sudo)
 ECHARTS := static/page/echarts.min.js
 
-.PHONY: build demo test check tools references fuzz screenshots bench clean
+.PHONY: build soundcard demo test check tools references fuzz screenshots bench clean
 
 build: $(ECHARTS)
 	$(GO) build -o bin/shakerwatch ./cmd/shakerwatch
 
+# The same with sound cards, which need a C library.
+soundcard: $(ECHARTS) tools
+	$(GO) build -tags soundcard -o bin/shakerwatch ./cmd/shakerwatch
+
 demo: build
 	bin/shakerwatch
 
-test: $(ECHARTS) tools check
+test: tools check
 	$(PYTHON) testdata/compare_references.py
 	$(GO) test -race -shuffle=on ./...
+	$(GO) test -race -shuffle=on -tags soundcard ./acquire/soundcard/...
+	$(GO) test -tags soundcard -run Soundcard ./cmd/shakerwatch
 
 # What a reader of the code would ask for first.
-check: $(ECHARTS)
+check: $(ECHARTS) tools
 	@files=$$(gofmt -l acquire spectra estimate web static cmd); \
 	if [ -n "$$files" ]; then echo "not formatted by gofmt: $$files"; exit 1; fi
 	$(GO) vet ./...
+	$(GO) vet -tags soundcard ./acquire/soundcard/... ./cmd/shakerwatch
 	$(GO) mod tidy -diff
 	$(GO) mod verify
 
-# Debian packages that the tests need: a browser for the page, NumPy and SciPy for the references.
+# Debian packages that the tests need: a browser for the page, NumPy and SciPy for the references,
+# PortAudio for sound cards, and a sound server that stands in for one.
+PACKAGES := chromium fonts-dejavu-core python3-numpy python3-scipy \
+	portaudio19-dev pulseaudio pulseaudio-utils libasound2-plugins
 tools:
-	@command -v chromium >/dev/null && $(PYTHON) -c 'import numpy, scipy' 2>/dev/null || { \
+	@dpkg-query -W -f '$${db:Status-Status}\n' $(PACKAGES) 2>/dev/null | grep -cx installed | grep -qx $(words $(PACKAGES)) || { \
 		$(SUDO) apt-get update -q && \
-		$(SUDO) env DEBIAN_FRONTEND=noninteractive apt-get install -q -y --no-install-recommends \
-			chromium fonts-dejavu-core python3-numpy python3-scipy; }
+		$(SUDO) env DEBIAN_FRONTEND=noninteractive apt-get install -q -y --no-install-recommends $(PACKAGES); }
 
 # The plotting library, at the version that the lock file names.
 $(ECHARTS): static/package.json static/package-lock.json

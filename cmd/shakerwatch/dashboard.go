@@ -1,8 +1,10 @@
 package main
 
 import (
+	"context"
 	"fmt"
 	"net"
+	"sync"
 
 	"shakerwatch/cmd/internal/monitor"
 	"shakerwatch/web"
@@ -58,12 +60,36 @@ func (d *dashboard) observe(c *monitor.Config) {
 	c.OnRefresh = d.hub.Refresh
 }
 
-// finished is closed when the page asks to finish and save. Without a page it never is.
-func (d *dashboard) finished() <-chan struct{} {
+// onFinish calls finish when the page asks to finish and save. What it returns is done when ctx has
+// ended.
+func (d *dashboard) onFinish(ctx context.Context, finish func()) *sync.WaitGroup {
+	var waiting sync.WaitGroup
+	if d == nil {
+		return &waiting
+	}
+	waiting.Go(func() {
+		select {
+		case <-d.hub.Finish():
+			finish()
+		case <-ctx.Done():
+		}
+	})
+	return &waiting
+}
+
+// publishSetup shows how far a setup check is.
+func (d *dashboard) publishSetup(s web.SetupState) {
+	if d != nil {
+		d.hub.PublishSetup(s)
+	}
+}
+
+// proceed gives a value when the page says that the rig is ready. Without a page it never does.
+func (d *dashboard) proceed() <-chan struct{} {
 	if d == nil {
 		return nil
 	}
-	return d.hub.Finish()
+	return d.hub.Proceed()
 }
 
 // ended tells the page that the run is over.

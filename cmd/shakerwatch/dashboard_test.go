@@ -103,3 +103,23 @@ func TestTwoProgramsOnOnePort(t *testing.T) {
 	}
 	p.interrupt()
 }
+
+// TestSetupCheckInABrowser goes through the setup check of the simulated rig from the page.
+func TestSetupCheckInABrowser(t *testing.T) {
+	t.Parallel()
+	out := filepath.Join(t.TempDir(), "check")
+	p := start(t, "live", "../../acquire/demo/skid.toml", "--setup", "--blocks", "4", "--out", out)
+	w := pagetest.Open(t, p.address)
+	for _, stage := range []string{"muted", "zero drive", "on low"} {
+		w.Until(fmt.Sprintf(`document.getElementById("setup").textContent.includes(%q) && !document.getElementById("measure").disabled && document.getElementById("measure").checkVisibility()`, stage))
+		p.line("Press Enter when it is so")
+		// The button works a second after a new instruction is there, so that nobody agrees unread.
+		w.Until(`new Promise((done) => setTimeout(() => done(true), 1500))`)
+		w.Click("#measure")
+	}
+	p.line("The noise measurement and the findings are in")
+	w.Until(`document.getElementById("ended").textContent.includes("noise measurement")`)
+	w.Clean(p.address)
+	readFile(t, out, "noise.npz")
+	p.interrupt()
+}

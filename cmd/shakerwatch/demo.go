@@ -6,42 +6,43 @@ import (
 	"shakerwatch/acquire"
 	"shakerwatch/acquire/demo"
 	"shakerwatch/acquire/rig"
+	"shakerwatch/acquire/wav"
 )
+
+// restS is how long the simulated skid takes to come to rest on its cords, in seconds of its own
+// time, which pass at once.
+const restS = 120
 
 // demoSeed makes every demo the same run.
 const demoSeed = 1
 
 // demo runs the simulated rig that is built in.
 func (a *app) demo(ctx context.Context, _ []string) error {
-	return a.simulate(ctx, demo.Rig())
-}
-
-// live runs the rig file's source.
-func (a *app) live(ctx context.Context, args []string) error {
-	r, err := rig.Read(args[0])
+	in, err := simulated(ctx, demo.Rig())
 	if err != nil {
 		return unusable(err)
 	}
-	if r.Source.Kind != "demo" {
-		return unusablef("%s: source kind %q is not built into this version: choose \"demo\", or replay a recording", r.Path, r.Source.Kind)
-	}
-	return a.simulate(ctx, r)
+	return a.measure(ctx, in.measurement)
 }
 
-// simulate runs the simulated structure with a rig file's channels, in real time.
-func (a *app) simulate(ctx context.Context, r *rig.Rig) error {
+// simulated is the simulated structure with a rig file's channels, in real time.
+func simulated(ctx context.Context, r *rig.Rig) (*input, error) {
 	if err := computable(r); err != nil {
-		return unusable(err)
+		return nil, err
 	}
 	source, err := demo.New(r, demoSeed)
 	if err != nil {
-		return unusable(err)
+		return nil, err
 	}
-	return a.measure(ctx, measurement{
-		rig:    r,
-		kind:   "demo",
-		stream: source,
-		pace:   func(ctx context.Context, s acquire.Source) acquire.Source { return acquire.Pace(ctx, s, 1) },
-		live:   true,
-	})
+	return &input{
+		measurement: measurement{rig: r, kind: "demo", stream: source, pace: realTime, live: true},
+		encoding:    wav.Float32,
+		drive: func(share float64) {
+			source.SetDrive(share)
+			discard(source, restS)
+		},
+	}, nil
 }
+
+// realTime makes a source that does not wait by itself come as fast as it would be captured.
+func realTime(ctx context.Context, s acquire.Source) acquire.Source { return acquire.Pace(ctx, s, 1) }

@@ -28,12 +28,12 @@ func main() {
 		<-ctx.Done()
 		restore() // a second Ctrl-C cuts the waiting short
 	}()
-	os.Exit(run(ctx, os.Args[1:], os.Stdout, os.Stderr))
+	os.Exit(run(ctx, os.Args[1:], os.Stdin, os.Stdout, os.Stderr))
 }
 
 // run does what the arguments ask for and returns the exit status. It ends cleanly when ctx ends.
-func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
-	a := &app{stdout: stdout, stderr: stderr}
+func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.Writer) int {
+	a := &app{stdin: stdin, stdout: stdout, stderr: stderr}
 	err := a.dispatch(ctx, args)
 	if err == nil {
 		return exitDone
@@ -47,6 +47,7 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 
 // An app is one call of the program.
 type app struct {
+	stdin          io.Reader
 	stdout, stderr io.Writer
 	options
 }
@@ -70,6 +71,7 @@ var commands = []struct {
 	{"", "", "the demo: a simulated rig with two shakers, live", (*app).demo},
 	{"live", "RIG.toml", "watch what the rig file's source captures", (*app).live},
 	{"replay", "RIG.toml RECORDING", "run a recording through the same path as live capture", (*app).replay},
+	{"devices", "", "list the sound devices", (*app).devices},
 	{"check", "RIG.toml", "read the rig file and print what it resolves to, or every mistake in it", (*app).check},
 }
 

@@ -4,9 +4,9 @@ import (
 	"context"
 	"fmt"
 	"log/slog"
-	"sync"
 
 	"shakerwatch/acquire"
+	"shakerwatch/acquire/record"
 	"shakerwatch/acquire/rig"
 	"shakerwatch/cmd/internal/monitor"
 	"shakerwatch/cmd/internal/results"
@@ -21,15 +21,24 @@ type measurement struct {
 	live   bool
 	frames int64 // in the recording; 0 when nobody knows
 	only   []int64
+
+	interrupt func() // ends a Read that waits for ever; nil where none does
+
+	record    func() (*record.Recorder, error) // nil when nothing is to be recorded
+	recording string                           // path of the recording that is made
 }
 
 // measure runs a measurement to its end and writes its results.
 func (a *app) measure(ctx context.Context, m measurement) (err error) {
-	folder, err := a.openFolder()
+	folder, err := a.openFolder(results.EstimatesFile, results.SummaryFile, results.EventsFile)
 	if err != nil {
 		return unusable(err)
 	}
 	defer folder.Discard() // what holds results stays
+	noise, err := a.readNoise(m.rig)
+	if err != nil {
+		return unusable(err)
+	}
 	board, err := a.openDashboard(m)
 	if err != nil {
 		return unusable(err)
@@ -40,46 +49,46 @@ func (a *app) measure(ctx context.Context, m measurement) (err error) {
 		}
 	}()
 
-	result, runErr := a.monitor(ctx, m, board)
-	saved, err := a.save(folder, m, result)
+	recorder, err := m.startRecorder()
+	if err != nil {
+		return unusable(err)
+	}
+	result, runErr := a.monitor(ctx, m, board, recorder, noise)
+	a.closeRecorder(m, recorder)
+	saved, err := a.save(folder, m, noise, result)
 	if err != nil {
 		return err
 	}
 	a.tell(result, saved)
 	if runErr != nil {
-		board.ended("The source broke: " + runErr.Error() + ". " + saved)
-		return fmt.Errorf("%s: %w: the results so far are kept", m.kind, runErr)
+		runErr = fmt.Errorf("%s: %w: results are of what came before", m.kind, runErr)
+		saved = "The source broke. " + runErr.Error() + ". " + saved
 	}
 	board.ended(saved)
 	if board != nil {
 		<-ctx.Done()
 	}
-	return nil
+	return runErr
 }
 
 // monitor runs the pipeline, with everything that shows it, until it ends or the page asks to
 // finish.
-func (a *app) monitor(ctx context.Context, m measurement, board *dashboard) (*monitor.Result, error) {
+func (a *app) monitor(ctx context.Context, m measurement, board *dashboard, recorder *record.Recorder, noise *results.Noise) (*monitor.Result, error) {
 	ctx, finish := context.WithCancel(ctx)
-	var waiting sync.WaitGroup
-	waiting.Go(func() {
-		select {
-		case <-board.finished():
-			finish()
-		case <-ctx.Done():
-		}
-	})
+	waiting := board.onFinish(ctx, finish)
 	defer waiting.Wait()
 	defer finish()
-
 	progress := newProgress(a.stderr, m, a.blocks)
 	defer progress.close()
 	c := monitor.Config{
 		Rig:        m.rig,
-		Source:     m.pace(ctx, m.stream),
+		Source:     tee(m.pace, recorder)(ctx, m.stream),
 		Live:       m.live,
+		Interrupt:  m.interrupt,
 		Blocks:     a.blocks,
 		Only:       m.only,
+		Noise:      noise.Densities(),
+		Trouble:    func() []string { return recorderTrouble(recorder) },
 		OnProgress: progress.show,
 	}
 	board.observe(&c)
@@ -87,16 +96,35 @@ func (a *app) monitor(ctx context.Context, m measurement, board *dashboard) (*mo
 	return monitor.Run(ctx, c)
 }
 
-// openFolder is nil without --out.
-func (a *app) openFolder() (*results.Folder, error) {
+// readNoise is nil without --noise.
+func (a *app) readNoise(r *rig.Rig) (*results.Noise, error) {
+	if a.noise == "" {
+		return nil, nil
+	}
+	return results.ReadNoise(a.noise, r)
+}
+
+// startRecorder is nil when nothing is to be recorded.
+func (m measurement) startRecorder() (*record.Recorder, error) {
+	if m.record == nil {
+		return nil, nil
+	}
+	return m.record()
+}
+
+// openFolder is nil without --out. Files of the given names are not overwritten without --replace.
+func (a *app) openFolder(names ...string) (*results.Folder, error) {
 	if a.out == "" {
 		return nil, nil
 	}
-	return results.Open(a.out, a.replace)
+	if a.replace {
+		names = nil
+	}
+	return results.Open(a.out, names...)
 }
 
 // save writes the results and returns a sentence on where they are.
-func (a *app) save(folder *results.Folder, m measurement, result *monitor.Result) (string, error) {
+func (a *app) save(folder *results.Folder, m measurement, noise *results.Noise, result *monitor.Result) (string, error) {
 	if folder == nil {
 		return "Nothing was saved: --out DIR was not given.", nil
 	}
@@ -106,7 +134,7 @@ func (a *app) save(folder *results.Folder, m measurement, result *monitor.Result
 	if m.frames == 0 {
 		source.Frames = result.Frames
 	}
-	if err := folder.Write(m.rig, source, result); err != nil {
+	if err := folder.Write(m.rig, source, noise, result); err != nil {
 		return "", err
 	}
 	return "Results are in " + a.out + ".", nil

@@ -18,6 +18,12 @@ type options struct {
 	blocks   int64
 	pace     float64
 	only     string
+	noise    string
+	record   string
+	noRecord bool
+	reopen   bool
+	setup    bool
+	encoding string
 	help     bool
 
 	flags *pflag.FlagSet
@@ -38,6 +44,12 @@ func (o *options) parse(args []string) ([]string, error) {
 	f.Int64Var(&o.blocks, "blocks", 0, "end after so many averaged blocks")
 	f.Float64Var(&o.pace, "pace", 1, "replay so many times as fast as real time; 0 is as fast as the machine goes\n(default 1, or 0 with --headless)")
 	f.StringVar(&o.only, "only", "", "replay: average exactly the blocks that this summary.json lists")
+	f.StringVar(&o.noise, "noise", "", "noise measurement of this rig, noise.npz of a setup check")
+	f.StringVar(&o.record, "record", "", "live: record to this WAV file (with --out, to recording.wav there)")
+	f.BoolVar(&o.noRecord, "no-record", false, "live: do not record")
+	f.BoolVar(&o.reopen, "reopen", false, "live, sound card: wait for a device that went away")
+	f.BoolVar(&o.setup, "setup", false, "live: check the setup, stage by stage, instead of a run")
+	f.StringVar(&o.encoding, "encoding", "", "live, pipe: samples on standard input are s16, s24, s32, f32 or f64")
 	f.BoolVarP(&o.help, "help", "h", false, "print this")
 	o.flags = f
 	if err := f.Parse(args); err != nil {
@@ -53,10 +65,16 @@ func (o *options) checkValues() error {
 		return unusablef("--blocks %d: choose 1 or more", o.blocks)
 	case !(o.pace >= 0) || math.IsInf(o.pace, 0):
 		return unusablef("--pace %v: choose 0 or more", o.pace)
-	case o.replace && o.out == "":
+	case o.replace && o.out == "" && o.record == "":
 		return unusablef("--replace: there is nothing to replace without --out DIR: add it")
 	case f.Changed("out") && o.out == "":
 		return unusablef("--out: the folder has no name: give one")
+	case f.Changed("record") && (o.noRecord || o.record == ""):
+		return unusablef("--record: a file that is recorded to needs a name, and no --no-record: give one of them")
+	case o.setup && f.Changed("noise"):
+		return unusablef("--noise: a setup check measures it anew: leave it out")
+	case o.setup && (f.Changed("record") || o.noRecord):
+		return unusablef("--setup: nothing is recorded during a setup check: leave --record and --no-record out")
 	case o.headless && f.Changed("listen"):
 		return unusablef("--listen: there is no dashboard with --headless: leave one of them out")
 	}
@@ -65,10 +83,11 @@ func (o *options) checkValues() error {
 
 // allowedFlags are the flags of each command.
 var allowedFlags = map[string][]string{
-	"":       {"out", "replace", "listen", "headless", "blocks"},
-	"live":   {"out", "replace", "listen", "headless", "blocks"},
-	"replay": {"out", "replace", "listen", "headless", "blocks", "pace", "only"},
-	"check":  {},
+	"":        {"out", "replace", "listen", "headless", "blocks", "noise"},
+	"live":    {"out", "replace", "listen", "headless", "blocks", "noise", "record", "no-record", "reopen", "setup", "encoding"},
+	"replay":  {"out", "replace", "listen", "headless", "blocks", "noise", "pace", "only"},
+	"check":   {},
+	"devices": {},
 }
 
 // allowed refuses flags that the command does not have.

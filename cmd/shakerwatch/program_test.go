@@ -14,8 +14,8 @@ import (
 	"time"
 )
 
-// binary builds the program as users build it, once for all tests.
-var binary = sync.OnceValues(func() (string, error) {
+// builtProgram builds the program as users build it, once for all tests.
+var builtProgram = sync.OnceValues(func() (string, error) {
 	dir, err := os.MkdirTemp("", "shakerwatch-test-")
 	if err != nil {
 		return "", err
@@ -29,7 +29,7 @@ var binary = sync.OnceValues(func() (string, error) {
 
 func TestMain(m *testing.M) {
 	status := m.Run()
-	if path, err := binary(); err == nil {
+	if path, err := builtProgram(); err == nil {
 		os.RemoveAll(filepath.Dir(path))
 	}
 	os.Exit(status)
@@ -48,7 +48,7 @@ type program struct {
 // latest.
 func start(t *testing.T, args ...string) *program {
 	t.Helper()
-	path, err := binary()
+	path, err := builtProgram()
 	if err != nil {
 		t.Fatal(err)
 	}

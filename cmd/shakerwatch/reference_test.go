@@ -28,7 +28,7 @@ func shakerwatch(t testing.TB, args ...string) (status int, stdout, stderr strin
 
 func shakerwatchUntil(ctx context.Context, args ...string) (status int, stdout, stderr string) {
 	var out, errs bytes.Buffer
-	status = run(ctx, args, &out, &errs)
+	status = run(ctx, args, strings.NewReader(""), &out, &errs)
 	return status, out.String(), errs.String()
 }
 

@@ -71,7 +71,8 @@ func TestUnusableInput(t *testing.T) {
 		{"only out of order", []string{"replay", rigFile, recording, "--only", write("order.json", `{"block_starts": [2048, 0]}`)}, "ascending"},
 		{"address for strangers", []string{"replay", rigFile, recording, "--listen", "0.0.0.0:0"}, "loopback"},
 		{"address is none", []string{"replay", rigFile, recording, "--listen", "here"}, "--listen here"},
-		{"live without a source", []string{"live", with("kind.toml", "[source]", "[source]\nkind = \"pipe\""), "--headless"}, "kind.toml"},
+		{"live without a source", []string{"live", with("kind.toml", "[source]", "[source]\nkind = \"soundcard\""), "--headless"}, "kind.toml"},
+		{"noise of another rig", []string{"replay", rigFile, recording, "--noise", recording}, "give the noise.npz of a setup check"},
 		{"out is a file", []string{"replay", rigFile, recording, "--out", filepath.Join(empty, "x")}, "empty.wav"},
 	} {
 		t.Run(test.name, func(t *testing.T) {
