@@ -75,8 +75,6 @@ func (o *options) checkValues() error {
 		return unusablef("--noise: a setup check measures it anew: leave it out")
 	case o.setup && (f.Changed("record") || o.noRecord):
 		return unusablef("--setup: nothing is recorded during a setup check: leave --record and --no-record out")
-	case o.headless && f.Changed("listen"):
-		return unusablef("--listen: there is no dashboard with --headless: leave one of them out")
 	}
 	return nil
 }
