@@ -226,17 +226,17 @@ func measure(t testing.TB, r *rig.Rig, s Stage, frames []float64) Measurement {
 	return Measurement{Stage: s, Snapshot: snapshot, Tally: tally}
 }
 
-// A session is the three stages of a made rig before they are captured.
-type session struct{ muted, idle, low scene }
+// A trial is the three stages of a made rig before they are captured.
+type trial struct{ muted, idle, low scene }
 
-func newSession(seed uint64) *session {
-	return &session{quiet(10*seed, madeFrames), quiet(10*seed+3, madeFrames), driven(10*seed+6, madeFrames)}
+func newTrial(seed uint64) *trial {
+	return &trial{quiet(10*seed, madeFrames), quiet(10*seed+3, madeFrames), driven(10*seed+6, madeFrames)}
 }
 
 // all are its scenes.
-func (s *session) all() []scene { return []scene{s.muted, s.idle, s.low} }
+func (s *trial) all() []scene { return []scene{s.muted, s.idle, s.low} }
 
-func (s *session) measure(t testing.TB, r *rig.Rig) []Measurement {
+func (s *trial) measure(t testing.TB, r *rig.Rig) []Measurement {
 	t.Helper()
 	var list []Measurement
 	for stage, scene := range s.all() {

@@ -10,7 +10,7 @@ import (
 
 func TestNoiseOfStages(t *testing.T) {
 	r := parseRig(t, madeRig)
-	s := newSession(7)
+	s := newTrial(7)
 	s.idle.change(chA3z, constant(0))
 	m := s.measure(t, r)
 	n := NewNoise(r, m...)

@@ -10,9 +10,9 @@ import (
 )
 
 // humIn are the findings with the shakers off when something is added to the noise.
-func humIn(t *testing.T, window string, spoil func(s *session)) []Finding {
+func humIn(t *testing.T, window string, spoil func(s *trial)) []Finding {
 	t.Helper()
-	r, s := withWindow(t, window), newSession(6)
+	r, s := withWindow(t, window), newTrial(6)
 	spoil(s)
 	return Findings(r, measure(t, r, Muted, s.muted.digital(r)), measure(t, r, Idle, s.idle.digital(r)))
 }
@@ -35,7 +35,7 @@ func TestHumLevel(t *testing.T) {
 		{"rectangular off the line", "rectangular", 49.85, 0.04, "side lobes beyond one line"},
 	} {
 		t.Run(test.name, func(t *testing.T) {
-			findings := humIn(t, test.window, func(s *session) {
+			findings := humIn(t, test.window, func(s *trial) {
 				s.idle.tone(chA3z, test.hz, amplitude)
 				if test.hz > 100 {
 					// The third harmonic of a grid that is 0.4 Hz off; the fundamental has to be there.
@@ -61,7 +61,7 @@ func TestHumLevel(t *testing.T) {
 // the noise bandwidth, 1.5 lines for Hann (Harris 1978).
 func TestToneByNoiseBandwidth(t *testing.T) {
 	r := parseRig(t, madeRig)
-	s := newSession(6)
+	s := newTrial(6)
 	s.idle.tone(chA3z, 100, 0.05)
 	c := newCheck(r, []Measurement{measure(t, r, Idle, s.idle.digital(r))})
 	byLine := math.Sqrt(c.density(Idle, chA3z, 40) * 1.5 * r.Grid.SpacingHz)
@@ -94,38 +94,38 @@ func TestToneAboveNoise(t *testing.T) {
 func TestHumStories(t *testing.T) {
 	for _, test := range []struct {
 		name      string
-		spoil     func(s *session)
+		spoil     func(s *trial)
 		want      string // in the text of A3z; empty for no hum
 		severity  Severity
 		bandCount int
 	}{
-		{"50 Hz", func(s *session) { s.idle.tone(chA3z, 50, 0.02) }, "hum of 50 Hz mains, strongest 0.0141 m/s² rms at 50 Hz", Look, 1},
-		{"60 Hz", func(s *session) { s.idle.tone(chA3z, 60, 0.02) }, "hum of 60 Hz mains, strongest 0.0141 m/s² rms at 60 Hz", Look, 1},
-		{"the strongest of three", func(s *session) {
+		{"50 Hz", func(s *trial) { s.idle.tone(chA3z, 50, 0.02) }, "hum of 50 Hz mains, strongest 0.0141 m/s² rms at 50 Hz", Look, 1},
+		{"60 Hz", func(s *trial) { s.idle.tone(chA3z, 60, 0.02) }, "hum of 60 Hz mains, strongest 0.0141 m/s² rms at 60 Hz", Look, 1},
+		{"the strongest of three", func(s *trial) {
 			s.idle.tone(chA3z, 50, 0.01)
 			s.idle.tone(chA3z, 150, 0.02)
 			s.idle.tone(chA3z, 250, 0.005)
 		}, "at 150 Hz", Look, 3},
-		{"300 Hz belongs to both and decides nothing", func(s *session) {
+		{"300 Hz belongs to both and decides nothing", func(s *trial) {
 			s.idle.tone(chA3z, 60, 0.005)
 			s.idle.tone(chA3z, 300, 0.02)
 		}, "hum of 60 Hz mains", Look, 2},
-		{"300 Hz alone", func(s *session) { s.idle.tone(chA3z, 300, 0.02) }, "", Info, 0},
-		{"a tone at a high harmonic", func(s *session) { s.idle.tone(chA3z, 350, 0.02) }, "", Info, 0},
-		{"a tone beside mains", func(s *session) { s.idle.tone(chA3z, 75, 0.02) }, "", Info, 0},
-		{"little", func(s *session) { s.idle.tone(chA3z, 50, 0.001) }, "hum of 50 Hz mains", Info, 1},
-		{"hardly any", func(s *session) { s.idle.tone(chA3z, 50, 0.0002) }, "", Info, 0},
-		{"a resonance that the floor excites", func(s *session) {
+		{"300 Hz alone", func(s *trial) { s.idle.tone(chA3z, 300, 0.02) }, "", Info, 0},
+		{"a tone at a high harmonic", func(s *trial) { s.idle.tone(chA3z, 350, 0.02) }, "", Info, 0},
+		{"a tone beside mains", func(s *trial) { s.idle.tone(chA3z, 75, 0.02) }, "", Info, 0},
+		{"little", func(s *trial) { s.idle.tone(chA3z, 50, 0.001) }, "hum of 50 Hz mains", Info, 1},
+		{"hardly any", func(s *trial) { s.idle.tone(chA3z, 50, 0.0002) }, "", Info, 0},
+		{"a resonance that the floor excites", func(s *trial) {
 			m := newMass(100, 1, 0.04)
 			for n, v := range s.muted[chS1] {
 				s.idle[chA3z][n] += m.next(v)
 			}
 		}, "", Info, 0},
-		{"from the sensor's ground", func(s *session) {
+		{"from the sensor's ground", func(s *trial) {
 			s.muted.tone(chA3z, 50, 0.02)
 			s.idle.tone(chA3z, 50, 0.02)
 		}, "with the amplifiers muted too: look for a ground loop", Look, 1},
-		{"from the amplifiers", func(s *session) {
+		{"from the amplifiers", func(s *trial) {
 			s.muted.tone(chA3z, 50, 0.005)
 			s.idle.tone(chA3z, 50, 0.02)
 		}, "which comes with the amplifiers: lead its cable away", Look, 1},
@@ -148,7 +148,7 @@ func TestHumStories(t *testing.T) {
 }
 
 func TestHumWithoutTheSecondStage(t *testing.T) {
-	r, s := parseRig(t, madeRig), newSession(6)
+	r, s := parseRig(t, madeRig), newTrial(6)
 	s.muted.tone(chA3z, 50, 0.02)
 	f := find(t, Findings(r, measure(t, r, Muted, s.muted.digital(r))), Muted, MainsHum, "A3z")
 	if !strings.Contains(f.Text, "around it: look for a ground loop") {
@@ -165,7 +165,7 @@ func TestLinesTooFarApartForHum(t *testing.T) {
 		{"4", "", false}, // 25 Hz are six lines: two of the tone, four of what is around it
 	} {
 		r := parseRig(t, strings.Replace(madeRig, "line_spacing = 2.5", "line_spacing = "+test.spacing, 1))
-		s := newSession(6)
+		s := newTrial(6)
 		s.idle.tone(chA3z, 50, 0.02)
 		findings := Findings(r, measure(t, r, Idle, s.idle.digital(r)))
 		if !test.coarse {

@@ -15,7 +15,7 @@ import (
 func TestHealthyRigHasNothingFlagged(t *testing.T) {
 	r := parseRig(t, madeRig)
 	for seed := range uint64(4) {
-		findings := Findings(r, newSession(seed).measure(t, r)...)
+		findings := Findings(r, newTrial(seed).measure(t, r)...)
 		if got := flagged(findings); len(got) > 0 {
 			t.Errorf("seed %d: %q", seed, got)
 		}
@@ -50,7 +50,7 @@ func checkShape(t *testing.T, findings []Finding) {
 }
 
 func TestNumbers(t *testing.T) {
-	r, s := parseRig(t, madeRig), newSession(2)
+	r, s := parseRig(t, madeRig), newTrial(2)
 	s.low.change(chA3z, plus(10))
 	s.low[chA4x][100] = -25
 	findings := Findings(r, s.measure(t, r)...)
@@ -80,7 +80,7 @@ func TestNumbers(t *testing.T) {
 // TestLimitIsThatOfTheChain: a conditioner that clips at 5 V before an input of 10 V.
 func TestLimitIsThatOfTheChain(t *testing.T) {
 	r := parseRig(t, strings.Replace(madeRig, "name = \"S1\"", "name = \"S1\"\nlimit = 5.0", 1))
-	findings := Findings(r, newSession(2).measure(t, r)...)
+	findings := Findings(r, newTrial(2).measure(t, r)...)
 	f := find(t, findings, Idle, NoiseLevel, "S1")
 	// 5 V at 0.01 V per N are 500 N.
 	if want := fmt.Sprintf(" %.1f dB below its limit", 20*math.Log10(500/float64(f.Number))); !strings.HasSuffix(f.Text, want) {
@@ -95,7 +95,7 @@ func TestLimitIsThatOfTheChain(t *testing.T) {
 // and what is left above the noise are together its signal-to-noise elsewhere: 26 dB here, less 2 dB
 // for the skirts of the notch, which reach its neighbours.
 func TestDropAndMargin(t *testing.T) {
-	r, s := parseRig(t, madeRig), newSession(5)
+	r, s := parseRig(t, madeRig), newTrial(5)
 	s.low = driven(5, madeFrames, func(forces scene) { forces.notch(chS1) })
 	s.hiss(chS1, 1)
 	f := find(t, Findings(r, s.measure(t, r)...), Low, ForceDrop, "S1")
@@ -112,7 +112,7 @@ func TestDropAndMargin(t *testing.T) {
 func TestRailIsWhereItStuckLonger(t *testing.T) {
 	r := parseRig(t, madeRig)
 	for _, test := range []struct{ lowest, highest int }{{60, 40}, {40, 60}} {
-		s := newSession(5)
+		s := newTrial(5)
 		for n := range test.lowest {
 			s.low[chA3z][2000+n] = -1e3
 		}
@@ -128,7 +128,7 @@ func TestRailIsWhereItStuckLonger(t *testing.T) {
 
 func TestMissingStages(t *testing.T) {
 	r := parseRig(t, madeRig)
-	m := newSession(3).measure(t, r)
+	m := newTrial(3).measure(t, r)
 	count := func(findings []Finding, kind Kind) (n int) {
 		for _, f := range findings {
 			if f.Kind == kind {
@@ -162,8 +162,8 @@ func TestMissingStages(t *testing.T) {
 }
 
 func TestALaterMeasurementOfAStageCounts(t *testing.T) {
-	r, s := parseRig(t, madeRig), newSession(4)
-	bad := newSession(4)
+	r, s := parseRig(t, madeRig), newTrial(4)
+	bad := newTrial(4)
 	bad.low.change(chA3z, constant(0))
 	m := append(bad.measure(t, r), s.measure(t, r)[Low])
 	if got := flagged(Findings(r, m...)); len(got) > 0 {
@@ -172,7 +172,7 @@ func TestALaterMeasurementOfAStageCounts(t *testing.T) {
 }
 
 func TestTooFewAverages(t *testing.T) {
-	r, s := parseRig(t, madeRig), newSession(4)
+	r, s := parseRig(t, madeRig), newTrial(4)
 	cutTo := func(blocks int) []Measurement {
 		var list []Measurement
 		for stage, scene := range s.all() {
@@ -206,7 +206,7 @@ func TestTooFewAverages(t *testing.T) {
 
 func TestForceWithoutDrivingPoint(t *testing.T) {
 	r := parseRig(t, strings.Replace(madeRig, "name = \"A1z\"\npoint = \"1\"", "name = \"A1z\"\npoint = \"9\"", 1))
-	findings := Findings(r, newSession(4).measure(t, r)...)
+	findings := Findings(r, newTrial(4).measure(t, r)...)
 	checkShape(t, findings)
 	if f := find(t, findings, Low, PowerFlow, "S1"); f.Severity != Info || !math.IsNaN(float64(f.Number)) {
 		t.Errorf("%v", f)
@@ -215,7 +215,7 @@ func TestForceWithoutDrivingPoint(t *testing.T) {
 
 func TestFindingAsWritten(t *testing.T) {
 	r := parseRig(t, madeRig)
-	m := newSession(4).measure(t, r)
+	m := newTrial(4).measure(t, r)
 	got, err := json.Marshal(find(t, Findings(r, m[1]), Muted, NotMeasured, ""))
 	want := `{"stage":"muted","kind":"not-measured","channels":[],"number":null,"unit":"","bands_hz":[],"severity":"info",` +
 		`"text":"nothing was measured with the amplifiers muted, so what the amplifiers add to the noise is unknown: measure that stage too"}`
@@ -251,7 +251,7 @@ func TestSpoiltNumbers(t *testing.T) {
 	r := parseRig(t, madeRig)
 	for name, v := range map[string]float64{"NaN": math.NaN(), "infinity": math.Inf(1), "zero": 0} {
 		for _, stage := range Stages() {
-			m := newSession(4).measure(t, r)
+			m := newTrial(4).measure(t, r)
 			s := m[stage].Snapshot
 			for k := range s.Lines {
 				s.Gyy[k*s.Responses+2] = v
