@@ -10,7 +10,7 @@ func BenchmarkRefresh(b *testing.B) {
 	for _, size := range []struct{ q, p, lines int }{{2, 14, 1601}, {8, 504, 801}} {
 		b.Run(fmt.Sprintf("%dx%dx%d", size.q, size.p, size.lines), func(b *testing.B) {
 			f := newFeed(b, size.q, size.p, size.lines)
-			h := NewHub(f.rig, "demo")
+			h := NewHub(f.rig, "demo", true)
 			f.add(size.q + 4)
 			st, e := f.refresh(h)
 			v := h.first
@@ -30,7 +30,7 @@ func BenchmarkRefresh(b *testing.B) {
 // BenchmarkAnotherView is what each further view of the same refresh costs.
 func BenchmarkAnotherView(b *testing.B) {
 	f := newFeed(b, 8, 504, 801)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	f.add(12)
 	f.refresh(h)
 	v := h.first
@@ -46,7 +46,7 @@ func BenchmarkAnotherView(b *testing.B) {
 
 func BenchmarkLevels(b *testing.B) {
 	f := newFeed(b, 8, 504, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	l := f.levels(1, -1)
 	for b.Loop() {
 		h.PublishLevels(l)

@@ -108,7 +108,7 @@ func inBubble(t *testing.T, test func(t *testing.T, f *feed, h *Hub, l *pipeList
 	f := newFeed(t, 2, 5, 401)
 	f.add(12)
 	synctest.Test(t, func(t *testing.T) {
-		h := NewHub(f.rig, "demo")
+		h := NewHub(f.rig, "demo", true)
 		s, l := NewServer(h, nil), newPipeListener()
 		served := make(chan error)
 		go func() { served <- s.Serve(l) }()

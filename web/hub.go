@@ -45,12 +45,13 @@ type numbered struct {
 func (n *numbered) set(text []byte) { n.text, n.number = text, n.number+1 }
 
 // NewHub makes the hub of a run on r, which it only reads. kind is the kind of source: "demo",
-// "soundcard", "pipe", or "recording" for a replay.
-func NewHub(r *rig.Rig, kind string) *Hub {
+// "soundcard", "pipe", or "recording" for a replay. saves tells whether the results will be saved
+// when the run ends.
+func NewHub(r *rig.Rig, kind string, saves bool) *Hub {
 	list := estimate.ReciprocityPairs(estimate.DrivingPoints(r))
 	q, p, l := len(r.Forces), len(r.Responses), r.Grid.Lines
 	h := &Hub{
-		description: mustMarshal(describe(r, kind, rand.Text(), list)),
+		description: mustMarshal(describe(r, kind, rand.Text(), saves, list)),
 		shape:       shape{lines: l, responses: p, forces: q, pairs: list, spacingHz: r.Grid.SpacingHz},
 		channels:    q + p,
 		finish:      make(chan struct{}),

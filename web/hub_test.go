@@ -56,7 +56,7 @@ func (h *Hub) refreshFor(t *testing.T, v view) readRefresh {
 
 func TestRefreshCarriesTheEstimates(t *testing.T) {
 	f := newFeed(t, 2, 14, 401)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	f.add(30)
 	st, e := f.refresh(h)
 	v := h.first
@@ -111,7 +111,7 @@ func TestRefreshCarriesTheEstimates(t *testing.T) {
 
 func TestRefreshSaysWhatIsUnknown(t *testing.T) {
 	f := newFeed(t, 2, 3, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	if text, number := h.results.message(h.first); text != nil || number != 0 {
 		t.Errorf("before the first refresh: number %d, %s", number, text)
 	}
@@ -145,7 +145,7 @@ func TestRefreshSaysWhatIsUnknown(t *testing.T) {
 
 func TestRefreshGivesTheFormerEstimatesBack(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	first, second := f.estimates(), f.estimates()
 	for i, test := range []struct{ give, want *estimate.Estimates }{
 		{nil, nil}, {first, nil}, {nil, nil}, {second, first}, {first, second},
@@ -158,7 +158,7 @@ func TestRefreshGivesTheFormerEstimatesBack(t *testing.T) {
 
 func TestRefreshThinsToTheBandThatIsShown(t *testing.T) {
 	f := newFeed(t, 1, 2, 2401)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	f.add(10)
 	_, e := f.refresh(h)
 	whole := h.refreshFor(t, h.first)
@@ -204,7 +204,7 @@ func TestRefreshThinsToTheBandThatIsShown(t *testing.T) {
 // One message is made for all pages that look at the same, and none twice for the same refresh.
 func TestMessagesAreMadeOnce(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	f.refresh(h)
 	a, _ := h.results.message(h.first)
 	b, _ := h.results.message(h.first)
@@ -224,7 +224,7 @@ func TestMessagesAreMadeOnce(t *testing.T) {
 
 func TestHubPanicsWhenTheCallerMixesShapes(t *testing.T) {
 	f, other := newFeed(t, 2, 3, 101), newFeed(t, 2, 4, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	for name, call := range map[string]func(){
 		"estimates of another rig": func() { h.Refresh(Status{}, other.estimates()) },
 		"Gxx of another rig":       func() { h.Refresh(Status{Gxx: make([]complex128, 5)}, f.estimates()) },
@@ -257,7 +257,7 @@ func TestDescription(t *testing.T) {
 			ID     string
 			Option map[string]any
 		}
-	}](t, NewHub(f.rig, "recording").description)
+	}](t, NewHub(f.rig, "recording", true).description)
 	if d.Type != "describe" || d.Run == "" || d.Title != f.rig.Title || d.Kind != "recording" {
 		t.Errorf("%q %q %q %q", d.Type, d.Run, d.Title, d.Kind)
 	}
@@ -270,14 +270,14 @@ func TestDescription(t *testing.T) {
 	if want := float64(f.rig.Grid.Hop) / f.rig.Grid.RateHz; math.Abs(d.HopS-want) > 1e-12 {
 		t.Errorf("hop %g s, want %g", d.HopS, want)
 	}
-	if again := NewHub(f.rig, "recording").description; string(again) == string(NewHub(f.rig, "recording").description) {
+	if again := NewHub(f.rig, "recording", true).description; string(again) == string(NewHub(f.rig, "recording", true).description) {
 		t.Error("two runs have the same name")
 	}
 }
 
 func TestPublishLevelsKeepsNoHold(t *testing.T) {
 	f := newFeed(t, 1, 1, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	l := Levels{TimeS: 1.5, RMS: []float64{0.25, math.NaN()}, Peak: []float64{1, 0.5}, Block: 0.75}
 	h.PublishLevels(l)
 	l.RMS[0], l.Peak[0] = 9, 9

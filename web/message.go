@@ -24,7 +24,8 @@ type description struct {
 	Type       string          `json:"type"` // "describe"
 	Run        string          `json:"run"`  // tells this run from any other
 	Title      string          `json:"title"`
-	Kind       string          `json:"kind"` // of source
+	Kind       string          `json:"kind"`  // of source
+	Saves      bool            `json:"saves"` // whether results are saved when the run ends
 	Channels   []channel       `json:"channels"`
 	Forces     int             `json:"forces"` // how many of the channels, from the first on
 	Pairs      [][2]int        `json:"pairs"`  // of forces, whose reciprocity can be judged
@@ -58,7 +59,7 @@ type target struct {
 	LastHz      estimate.Number `json:"last_hz"`
 }
 
-func describe(r *rig.Rig, kind, run string, pairs [][2]int) description {
+func describe(r *rig.Rig, kind, run string, saves bool, pairs [][2]int) description {
 	t := estimate.NewTarget(r)
 	g, spacing := r.Grid, r.Grid.SpacingHz
 	return description{
@@ -66,6 +67,7 @@ func describe(r *rig.Rig, kind, run string, pairs [][2]int) description {
 		Run:        run,
 		Title:      r.Title,
 		Kind:       kind,
+		Saves:      saves,
 		Channels:   channels(r),
 		Forces:     len(r.Forces),
 		Pairs:      pairs,

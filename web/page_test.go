@@ -71,7 +71,7 @@ func drawn(plot string, number int) string {
 
 func TestPageShowsARun(t *testing.T) {
 	f := newFeed(t, 2, 14, 1601)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 3)
 	w := pagetest.Open(t, address)
@@ -127,7 +127,7 @@ func TestPageHostileNames(t *testing.T) {
 	f.rig.Title = hostile
 	f.rig.Forces[0].Name = hostile + "1"
 	f.rig.Responses[0].Name = hostile + "2"
-	h := NewHub(f.rig, hostile)
+	h := NewHub(f.rig, hostile, true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 1)
 	w := pagetest.Open(t, address)
@@ -151,7 +151,7 @@ func TestPageHostileNames(t *testing.T) {
 
 func TestPageReadsValuesInAllPlots(t *testing.T) {
 	f := newFeed(t, 2, 5, 801)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -173,7 +173,7 @@ func TestPageReadsValuesInAllPlots(t *testing.T) {
 
 func TestPageBand(t *testing.T) {
 	f := newFeed(t, 2, 5, 1601)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -197,7 +197,7 @@ func TestPageBand(t *testing.T) {
 
 func TestPageStaysAfterTheEnd(t *testing.T) {
 	f := newFeed(t, 2, 5, 401)
-	h := NewHub(f.rig, "recording")
+	h := NewHub(f.rig, "recording", true)
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -243,7 +243,7 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 
 func TestPageSaysThatDataAreOld(t *testing.T) {
 	f := newFeed(t, 2, 5, 401)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -262,7 +262,7 @@ func TestPageSaysThatDataAreOld(t *testing.T) {
 
 func TestPageManyResponses(t *testing.T) {
 	f := newFeed(t, 8, 504, 101)
-	h := NewHub(f.rig, "pipe")
+	h := NewHub(f.rig, "pipe", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 9)
 	w := pagetest.Open(t, address)
@@ -272,5 +272,17 @@ func TestPageManyResponses(t *testing.T) {
 	w.Until(`document.querySelectorAll("#strip span").length === 512 && document.querySelectorAll("#levels li").length === 16`)
 	w.Until(`document.querySelector("#levels li .name").textContent.startsWith("<img")`) // the one at its limit leads
 	w.Picture("many")
+	w.Clean(address)
+}
+
+func TestPageSaysThatNothingWillBeSaved(t *testing.T) {
+	f := newFeed(t, 1, 2, 101)
+	h := NewHub(f.rig, "soundcard", false)
+	address, _ := serve(t, h)
+	f.keepFresh(t, h, -1)
+	w := pagetest.Open(t, address)
+	w.Until(`document.getElementById("finish").textContent === "Finish, nothing saved…" && !document.getElementById("finish").disabled`)
+	w.Click("#finish")
+	w.Until(`document.getElementById("ask").open && document.getElementById("ask-title").textContent.includes("NOT be saved")`)
 	w.Clean(address)
 }

@@ -113,7 +113,7 @@ func TestPlotsNeedWhatTheRigLacks(t *testing.T) {
 // The chart library of the options has a public host as its default for scripts.
 func TestNoPlotNamesAHost(t *testing.T) {
 	r := madeRig(t, 3, 12, 101)
-	text, err := json.Marshal(describe(r, "demo", "run", estimate.ReciprocityPairs(estimate.DrivingPoints(r))))
+	text, err := json.Marshal(describe(r, "demo", "run", true, estimate.ReciprocityPairs(estimate.DrivingPoints(r))))
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -102,7 +102,7 @@ func everyScreen(w *pagetest.Window, name string) {
 
 func TestPageLeadsThroughTheSetupCheck(t *testing.T) {
 	f := newFeed(t, 2, 14, 401)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -169,7 +169,7 @@ func TestPageLeadsThroughTheSetupCheck(t *testing.T) {
 // By keys alone; and a key that is held down, or pressed twice, does not answer the next instruction.
 func TestSetupCheckByKeys(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -213,7 +213,7 @@ func TestSetupCheckByKeys(t *testing.T) {
 // A page that lost the program, or shows old data, starts nothing.
 func TestSetupCheckSaysThatDataAreOld(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "soundcard")
+	h := NewHub(f.rig, "soundcard", true)
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -233,7 +233,7 @@ func TestSetupCheckSaysThatDataAreOld(t *testing.T) {
 // Without a bad finding, what was not measured still keeps it from being in order.
 func TestSetupCheckIsNotInOrderWithoutAllStages(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "demo")
+	h := NewHub(f.rig, "demo", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -252,7 +252,7 @@ func TestSetupCheckIsNotInOrderWithoutAllStages(t *testing.T) {
 
 func TestSetupCheckCanEndEarly(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, hostile)
+	h := NewHub(f.rig, hostile, true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -281,7 +281,7 @@ func TestSetupCheckCanEndEarly(t *testing.T) {
 // 512 channels with ten findings each.
 func TestSetupCheckOfManyChannels(t *testing.T) {
 	f := newFeed(t, 8, 504, 101)
-	h := NewHub(f.rig, "pipe")
+	h := NewHub(f.rig, "pipe", true)
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 9)
 	w, check := pagetest.Open(t, address), &walk{h: h}

@@ -197,7 +197,7 @@ func TestMeasureIsTakenOnceAndOnlyForTheStageWaitedFor(t *testing.T) {
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
-			h := NewHub(madeRig(t, 1, 1, 101), "demo")
+			h := NewHub(madeRig(t, 1, 1, 101), "demo", true)
 			test.play(h)
 			if got := h.proceeds(); got != test.want {
 				t.Errorf("%d values, want %d", got, test.want)
@@ -241,7 +241,7 @@ func TestPagesSeeTheSetupCheck(t *testing.T) {
 
 // Progress comes many times and the findings may be thousands: they are sent when they change.
 func TestFindingsAreSentOnce(t *testing.T) {
-	h := NewHub(madeRig(t, 1, 1, 101), "demo")
+	h := NewHub(madeRig(t, 1, 1, 101), "demo", true)
 	s := SetupState{Findings: []setup.Finding{{Text: "one"}}}
 	var page sent
 	var kinds []string
@@ -307,7 +307,7 @@ func TestPublishSetupPanicsWithWhatDoesNotExist(t *testing.T) {
 					t.Errorf("panic %q", got)
 				}
 			}()
-			NewHub(madeRig(t, 1, 1, 101), "demo").PublishSetup(s)
+			NewHub(madeRig(t, 1, 1, 101), "demo", true).PublishSetup(s)
 		})
 	}
 }

@@ -25,7 +25,7 @@ func (a *app) openDashboard(m measurement) (*dashboard, error) {
 	if err := loopback(a.listen); err != nil {
 		return nil, err
 	}
-	hub := web.NewHub(m.rig, m.kind)
+	hub := web.NewHub(m.rig, m.kind, a.out != "")
 	server := web.NewServer(hub, a.logger())
 	listener, err := net.Listen("tcp", a.listen)
 	if err != nil {

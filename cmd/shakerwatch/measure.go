@@ -115,6 +115,7 @@ func (m measurement) startRecorder() (*record.Recorder, error) {
 // openFolder is nil without --out. Files of the given names are not overwritten without --replace.
 func (a *app) openFolder(names ...string) (*results.Folder, error) {
 	if a.out == "" {
+		fmt.Fprintln(a.stdout, "Nothing will be saved: --out DIR was not given.")
 		return nil, nil
 	}
 	if a.replace {

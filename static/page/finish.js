@@ -28,6 +28,15 @@ export function build(finish) {
   };
 }
 
+// savesNothing has it say that the results of this run will be lost, before they are.
+export function savesNothing() {
+  words = { button: "Finish, nothing saved…", busy: "Finishing…", over: "Run ended" };
+  put(document.getElementById("ask-title"), "Finish the run? Its results will NOT be saved.");
+  put(document.getElementById("ask-text"), "The program was started without --out DIR. Averaging ends here and cannot be taken up again.");
+  put(document.getElementById("ask-finish"), "Finish, save nothing");
+  draw();
+}
+
 // take shows a message on the run and returns whether it has ended.
 export function take(message) {
   finishing = message.finishing;

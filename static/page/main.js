@@ -38,6 +38,9 @@ const heard = {
       choices.build(message, (request) => socket.send(request));
       events.build(choices.look);
       finish.build(() => socket.send({ type: "finish" }));
+      if (!message.saves) {
+        finish.savesNothing();
+      }
       setup.build((stage) => socket.send({ type: "measure", stage }));
       charts.build(message, choices.look);
     }
