@@ -136,7 +136,11 @@ func (a *app) save(folder *results.Folder, m measurement, noise *results.Noise, 
 		source.Frames = result.Frames
 	}
 	if err := folder.Write(m.rig, source, noise, result); err != nil {
-		return "", err
+		remedy := "make room or mend the folder, then run again"
+		if m.recording != "" {
+			remedy = "make room or mend the folder, then replay " + m.recording
+		}
+		return "", fmt.Errorf("%w: %s", err, remedy)
 	}
 	return "Results are in " + a.out + ".", nil
 }

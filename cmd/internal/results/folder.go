@@ -99,7 +99,7 @@ func (f *Folder) put(name string, write func(io.Writer) error) (err error) {
 	}()
 	buffered := bufio.NewWriterSize(file, 1<<20)
 	if err := write(buffered); err != nil {
-		return err
+		return cause(err)
 	}
 	if err := buffered.Flush(); err != nil {
 		return cause(err)
