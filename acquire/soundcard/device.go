@@ -28,10 +28,9 @@ var usualRatesHz = []float64{
 // String is the host API and the name, which together tell devices apart.
 func (d Device) String() string { return d.HostAPI + ": " + d.Name }
 
-// Match is the index of the one device with inputs that is meant by text: its name, its name behind
-// that of its host API as String writes it, or a part of that, whichever comes first in this list
-// and fits. Case does not matter. An empty text means the Default. The error lists the choices.
-func Match(devices []Device, text string) (int, error) {
+// match is the index of the one device with inputs that is meant by text, as Open says. The error lists
+// the choices.
+func match(devices []Device, text string) (int, error) {
 	fits := []func(Device) bool{
 		func(d Device) bool { return text == "" && d.Default },
 		func(d Device) bool { return strings.EqualFold(d.Name, text) },

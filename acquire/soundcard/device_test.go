@@ -28,7 +28,7 @@ func TestMatch(t *testing.T) {
 		{"a part of the name of the host API", "jack", 5},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			if got, err := Match(someDevices, c.text); err != nil || got != c.want {
+			if got, err := match(someDevices, c.text); err != nil || got != c.want {
 				t.Errorf("got %d, %v, want %d", got, err, c.want)
 			}
 		})
@@ -52,7 +52,7 @@ func TestMatchRefuses(t *testing.T) {
 		{"no default", someDevices[5:], "", `no default device: sound device "": choose "JACK: system" or "OSS: system"`},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			if got, err := Match(c.devices, c.text); err == nil || err.Error() != c.want {
+			if got, err := match(c.devices, c.text); err == nil || err.Error() != c.want {
 				t.Errorf("got %d, %v, want %s", got, err, c.want)
 			}
 		})
@@ -66,7 +66,7 @@ func TestMatchTakesWhatItOffers(t *testing.T) {
 			continue
 		}
 		for _, text := range []string{d.String(), strings.ToUpper(d.String())} {
-			if got, err := Match(someDevices, text); err != nil || got != i {
+			if got, err := match(someDevices, text); err != nil || got != i {
 				t.Errorf("%s: %d, %v", text, got, err)
 			}
 		}

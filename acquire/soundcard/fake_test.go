@@ -17,6 +17,7 @@ type fakeCard struct {
 	breaks time.Duration // after so long it gives nothing; 0 for never
 	fails  error         // what it says then; nil for nothing
 	hangs  chan struct{} // then it does not even answer until this is closed; nil if it does
+	torn   bool          // or it breaks in the middle of a read
 	slow   time.Duration // what release takes
 
 	start    time.Time
@@ -36,7 +37,7 @@ func newFakeCard(rateHz float64, channels int, losses ...fakeLoss) *fakeCard {
 
 func (f *fakeCard) available() (int, bool, error) {
 	now := time.Since(f.start)
-	if f.breaks > 0 && now >= f.breaks {
+	if f.breaks > 0 && now >= f.breaks && !f.torn {
 		if f.hangs != nil {
 			<-f.hangs
 		}
@@ -54,6 +55,9 @@ func (f *fakeCard) available() (int, bool, error) {
 }
 
 func (f *fakeCard) read(dst []float32) (overflow bool, err error) {
+	if f.torn && time.Since(f.start) >= f.breaks {
+		return false, f.fails
+	}
 	for i := 0; i < len(dst); i += f.channels {
 		if len(f.losses) > 0 && f.next == f.losses[0].first {
 			f.next += f.losses[0].frames

@@ -45,6 +45,11 @@ const (
 	// time shows the truth.
 	settleTime = 300 * time.Millisecond
 
+	// storeEnd: what a sound server had in store for a late reader came before the loss, but for the
+	// end of it. From when the store is full until the reader has caught up, which takes tenths of a
+	// second on a busy machine, pieces come and are dropped by turns.
+	storeEnd = time.Second
+
 	// longestDoubt is when a loss is reported that goes on and on.
 	longestDoubt = 900 * time.Millisecond
 
@@ -91,9 +96,7 @@ func (g *gapFinder) observe(at time.Duration, frames, queued, held int, overflow
 	case missing < d.level-g.frames(tolerance)/4:
 		d.mark(at, missing)
 		if !d.certain {
-			// What a sound server had in store came before the loss, but for a little at its end,
-			// where it had begun to drop some.
-			return finding{hold: int(g.frames(settleTime))}
+			return finding{hold: min(held+frames, int(g.frames(storeEnd)))}
 		}
 	default:
 		d.least = min(d.least, missing)

@@ -27,8 +27,15 @@ func TestGapFinderTells(t *testing.T) {
 		{"late, but there", []line{{900, 60, 160, false, finding{}}, {900, 160, 0, false, finding{}}}},
 		{"late, and nobody admits that more is there", []line{
 			{900, 60, 0, false, finding{hold: all}},
-			{901, 60, 0, false, finding{hold: 300}},
+			{901, 60, 0, false, finding{hold: all}},
 			{902, 60, 0, false, finding{}},
+		}},
+		{"very late, and nobody admits that more is there", []line{
+			{2740, 400, 0, false, finding{hold: all}},
+			{2741, 400, 0, false, finding{hold: all}},
+			{2742, 400, 0, false, finding{hold: 1000}},
+			{2743, 400, 0, false, finding{hold: 1000}},
+			{2744, 464, 0, false, finding{}},
 		}},
 		{"lost", []line{
 			{900, 60, 0, false, finding{hold: all}}, // 160 missing

@@ -67,7 +67,7 @@ func devices() ([]Device, []*portaudio.DeviceInfo, error) {
 	}
 	chosen, err := portaudio.DefaultInputDevice()
 	if err != nil {
-		chosen = nil // Match says so where it matters
+		chosen = nil // match says so where it matters
 	}
 	devices := make([]Device, len(infos))
 	for i, info := range infos {
@@ -124,13 +124,16 @@ func start(text string, rateHz float64, channels int) (card, string, error) {
 	if err != nil {
 		return nil, "", err
 	}
-	i, err := Match(devices, text)
+	i, err := match(devices, text)
 	if err != nil {
 		return nil, "", err
 	}
 	label := devices[i].String()
 	if channels < 1 || channels > devices[i].Inputs {
 		return nil, "", fmt.Errorf("%d channels of %d: sound device %q: choose 1 to %[2]d", channels, devices[i].Inputs, label)
+	}
+	if !(rateHz > 0) { // PortAudio takes what is no number for a rate
+		return nil, "", refused(portaudio.InvalidSampleRate, infos[i], label, rateHz, channels)
 	}
 	if err := accepts(infos[i], rateHz, channels); err != nil {
 		return nil, "", refused(err, infos[i], label, rateHz, channels)
@@ -182,11 +185,11 @@ func (s *stream) read(dst []float32) (overflow bool, err error) {
 
 func (s *stream) release() error {
 	// Not Stop, which may wait for what is no longer to be had. Whatever hangs does so here most
-	// likely, where it does not keep the library.
-	err := s.pa.Abort()
+	// likely, where it does not keep the library; and that a device is gone is no news here.
+	s.pa.Abort()
 	library.Lock()
 	defer library.Unlock()
-	return errors.Join(err, s.pa.Close(), portaudio.Terminate())
+	return errors.Join(s.pa.Close(), portaudio.Terminate())
 }
 
 // overflowed tells the one error that is none: what was read with it is valid.

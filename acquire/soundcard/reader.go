@@ -78,6 +78,9 @@ func (r *reader) read(ctx context.Context, dst []float32) (a answer) {
 			a.frames = min(n, fit)
 			overflow, a.err = r.card.read(dst[:a.frames*r.channels])
 			a.overflow = a.overflow || overflow
+			if a.err != nil {
+				a.frames = 0
+			}
 			return a
 		}
 		r.timer.Reset(lookInterval)

@@ -42,7 +42,7 @@ const (
 
 // OpenReopening does what Open does, and again each time the device was lost: about once a second
 // until it is there. Without a name it sticks to the device that was the default at first. What
-// happens is logged; log may be nil. When ctx ends, Read returns its cause.
+// happens is logged; log may be nil. When ctx ends, Read returns its cause, 2 s later at most.
 func OpenReopening(ctx context.Context, device string, rateHz float64, channels int, log *slog.Logger) (*Reopening, error) {
 	return reopening(ctx, rateHz, channels, log, func(ctx context.Context) (*Source, error) {
 		s, err := open(ctx, device, rateHz, channels)

@@ -138,7 +138,7 @@ func TestReopeningWaitsForFrames(t *testing.T) {
 				t.Error("opened while the last one is not given back")
 			}
 			card := newFakeCard(fakeRateHz, fakeChannels)
-			card.slow = fakeRelease
+			card.slow = retryInterval + fakeRelease
 			cards = append(cards, card)
 			switch opened {
 			case 1:

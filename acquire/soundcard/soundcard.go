@@ -22,8 +22,10 @@ var ErrNotBuilt = errors.New("sound cards are not built into this program: " +
 // switched off, or the sound server before it has ended or hangs.
 var ErrLost = errors.New("sound device lost")
 
-// Open starts to capture the first channels of a device at a rate. device is what Match takes. The
-// error says what the device could do instead.
+// Open starts to capture the first channels of a device at a rate. device is its name, or its name
+// behind that of its host API as Device.String writes it, or a part of that which no other device
+// with inputs has; case does not matter. Empty, it means the default. The error says what there is to
+// choose from, of devices, channels or rates.
 //
 // Devices that were plugged in while another Source is open are found only when that is closed:
 // PortAudio looks for devices when it is started.

@@ -13,9 +13,10 @@ import (
 // float32, which holds 24-bit samples exactly.
 //
 // What the device says it lost, and what is missing by the clock for more than 0.1 s, comes as a gap,
-// as long as the clock says. It comes some tenths of a second late, when this is known; where the
-// device said nothing, the frames of this time are in the gap, too, since it is not known where in
-// them others are missing. A slow drift between the clocks of device and computer is no gap.
+// as long as the clock says. It takes some tenths of a second to be known, and the frames of this time
+// are in the gap, too, since it is not known where among them others are missing; so is a second more
+// if the reader had stayed away before. A slow drift between the clocks of device and computer is no
+// gap.
 //
 // A Source serves one goroutine at a time, but for Close.
 type Source struct {
@@ -52,12 +53,15 @@ const (
 	// does not take its own absence for that of the device.
 	tick = 100 * time.Millisecond
 
+	// longestRead: as much is read at once, so that what is held back has room for more.
+	longestRead = 100 * time.Millisecond
+
 	// releaseTime is how long Close waits.
 	releaseTime = 2 * time.Second
 
-	// heldTime is how much can be held back: what it takes a doubt to settle, as much before it, and
+	// heldTime is how much can be held back: the end of a store, what it takes a doubt to settle, and
 	// as much again.
-	heldTime = 3 * settleTime
+	heldTime = storeEnd + 2*settleTime
 )
 
 // newSource starts the reader of a card.
@@ -115,7 +119,7 @@ func (s *Source) Read(dst []float64) (n int, err error) {
 
 // advance has frames read, or ends the source. There is room, since all that may be taken was.
 func (s *Source) advance() {
-	a := s.fetch(s.held.room(s.channels * max(1, int(s.rateHz*tick.Seconds()))))
+	a := s.fetch(s.held.room(s.channels * max(1, int(s.rateHz*longestRead.Seconds()))))
 	if a.frames > 0 {
 		s.last, s.queued = a.at, a.queued
 		before := s.held.kept / s.channels

@@ -1,4 +1,4 @@
-//go:build soundcard
+//go:build soundcard && linux
 
 // Package nullcard gives tests a sound device on a machine that has none: a sound server of its own
 // with a sink that goes nowhere, whose monitor is the default input of PortAudio, by way of ALSA. It
