@@ -53,9 +53,6 @@ func NewAverage(shape Shape, window []float64, hop, decimation int, rateHz float
 // Shape is the average's size.
 func (a *Average) Shape() Shape { return a.shape }
 
-// Len is the number of blocks in the list.
-func (a *Average) Len() int { return a.starts.Len() }
-
 // Sum adds the products of lines lo to hi-1 of transformed blocks, each (line, channel) with the
 // forces first, in the order given. Blocks whose products were summed on all lines must be
 // entered with Count before the next snapshot.
@@ -103,13 +100,4 @@ func product(a, b complex128) complex128 {
 func (a *Average) Count(start int64) {
 	a.starts.Append(start)
 	a.effective.Add(start)
-}
-
-// Reset empties the average and keeps its memory.
-func (a *Average) Reset() {
-	clear(a.gxx)
-	clear(a.gyx)
-	clear(a.gyy)
-	a.starts.Reset()
-	a.effective.Reset()
 }

@@ -52,6 +52,3 @@ func (e *Effective) Averages() float64 {
 	}
 	return float64(e.n) * float64(e.n) / e.sum
 }
-
-// Reset empties the count and keeps its memory.
-func (e *Effective) Reset() { e.n, e.sum = 0, 0 }

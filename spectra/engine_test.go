@@ -177,19 +177,6 @@ func TestScalingAForceByAPowerOfTwo(t *testing.T) {
 	})
 }
 
-func TestReset(t *testing.T) {
-	shape := Shape{Lines: 20, Forces: 1, Responses: 2}
-	b := newBench(t, shape, 64, 5, 2)
-	want := b.run([]int{5})
-	b.average.Reset()
-	if b.average.Len() != 0 {
-		t.Errorf("%d blocks after Reset", b.average.Len())
-	}
-	if got := b.run([]int{5}); !sameBits(got, want) {
-		t.Error("the average after Reset differs from a new one")
-	}
-}
-
 func TestEmptyAverageIsUnknown(t *testing.T) {
 	b := newBench(t, Shape{Lines: 3, Forces: 1, Responses: 1}, 16, 0, 1)
 	s := b.run([]int{1})

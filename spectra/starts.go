@@ -51,9 +51,6 @@ func (s *Starts) All() iter.Seq[int64] {
 	}
 }
 
-// Reset empties the list and keeps its memory.
-func (s *Starts) Reset() { s.runs, s.n = s.runs[:0], 0 }
-
 // copyTo makes dst equal to s, in dst's memory where it is large enough.
 func (s *Starts) copyTo(dst *Starts) {
 	dst.runs = append(dst.runs[:0], s.runs...)

@@ -33,7 +33,7 @@ func (a *app) openDashboard(m measurement) (*dashboard, error) {
 	}
 	d := &dashboard{hub: hub, server: server, served: make(chan error, 1)}
 	go func() { d.served <- server.Serve(listener) }()
-	fmt.Fprintf(a.stdout, "dashboard: http://%s\n", listener.Addr())
+	fmt.Fprintln(a.stdout, "dashboard:", web.URL(listener.Addr()))
 	fmt.Fprintln(a.stdout, "It only watches and is no protective system: keep clear, keep the emergency stop in reach.")
 	return d, nil
 }

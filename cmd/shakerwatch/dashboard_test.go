@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"path/filepath"
 	"slices"
+	"strings"
 	"testing"
 
 	"shakerwatch/web/pagetest"
@@ -97,7 +98,7 @@ func TestTwoProgramsOnOnePort(t *testing.T) {
 	p := start(t)
 	rigFile, recording := caseFiles("two_forces_hann")
 	out := filepath.Join(t.TempDir(), "results")
-	status, _, stderr := shakerwatch(t, "replay", rigFile, recording, "--listen", p.address[len("http://"):], "--out", out)
+	status, _, stderr := shakerwatch(t, "replay", rigFile, recording, "--listen", strings.Trim(strings.TrimPrefix(p.address, "http://"), "/"), "--out", out)
 	if status != exitUnusable || !bytes.Contains([]byte(stderr), []byte("choose another port")) {
 		t.Errorf("exit status %d, %q", status, stderr)
 	}

@@ -18,7 +18,7 @@ const demoSeed = 1
 
 // demo runs the simulated rig that is built in.
 func (a *app) demo(ctx context.Context, _ []string) error {
-	in, err := simulated(ctx, demo.Rig())
+	in, err := simulated(demo.Rig())
 	if err != nil {
 		return unusable(err)
 	}
@@ -26,10 +26,7 @@ func (a *app) demo(ctx context.Context, _ []string) error {
 }
 
 // simulated is the simulated structure with a rig file's channels, in real time.
-func simulated(ctx context.Context, r *rig.Rig) (*input, error) {
-	if err := computable(r); err != nil {
-		return nil, err
-	}
+func simulated(r *rig.Rig) (*input, error) {
 	source, err := demo.New(r, demoSeed)
 	if err != nil {
 		return nil, err

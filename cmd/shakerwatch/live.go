@@ -53,9 +53,12 @@ func (a *app) openInput(ctx context.Context, r *rig.Rig) (*input, error) {
 	if err := a.kindFlags(r.Source.Kind); err != nil {
 		return nil, err
 	}
+	if err := computable(r); err != nil {
+		return nil, err
+	}
 	switch r.Source.Kind {
 	case "demo":
-		return simulated(ctx, r)
+		return simulated(r)
 	case "pipe":
 		return a.openPipe(r)
 	default:
@@ -77,9 +80,6 @@ func (a *app) kindFlags(kind string) error {
 func asItComes(_ context.Context, s acquire.Source) acquire.Source { return s }
 
 func (a *app) openPipe(r *rig.Rig) (*input, error) {
-	if err := computable(r); err != nil {
-		return nil, err
-	}
 	if a.encoding == "" {
 		return nil, fmt.Errorf("--encoding: it is missing: say how samples stand in the stream, s16, s24, s32, f32 or f64")
 	}
@@ -119,9 +119,6 @@ func isFile(stdin *os.File) bool {
 }
 
 func (a *app) openSoundcard(ctx context.Context, r *rig.Rig) (*input, error) {
-	if err := computable(r); err != nil {
-		return nil, err
-	}
 	var source interface {
 		acquire.Source
 		io.Closer

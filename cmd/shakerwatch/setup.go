@@ -53,9 +53,10 @@ func (a *app) checkSetup(ctx context.Context, in *input) (err error) {
 		c.blocks = a.blocks
 	}
 	stagesCtx, finish := context.WithCancel(ctx)
-	defer finish()
-	board.onFinish(stagesCtx, finish)
+	waiting := board.onFinish(stagesCtx, finish)
 	runErr := c.stages(stagesCtx)
+	finish()
+	waiting.Wait()
 	saved, err := c.save(folder)
 	if err != nil {
 		return err

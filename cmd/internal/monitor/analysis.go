@@ -102,12 +102,10 @@ func (a *analysis) work() {
 
 // judge counts a block and decides where it goes.
 func (a *analysis) judge(c cut) {
-	g := a.config.Rig.Grid
 	rateHz := a.config.Rig.Source.RateHz
-	before := c.start + int64(g.Block)*int64(g.Decimation)
-	a.timeS = float64(before) / rateHz
+	a.timeS = float64(c.before) / rateHz
 	a.counts.Seen++
-	a.counts.Frames, a.counts.Gaps = before, c.gaps
+	a.counts.Frames, a.counts.Gaps = c.before, c.gaps
 	if c.atLimit != nil {
 		a.counts.Overranges++
 	}

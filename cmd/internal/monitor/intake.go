@@ -15,6 +15,7 @@ import (
 type cut struct {
 	index    int64
 	start    int64          // its first source frame
+	before   int64          // the source frame behind its last one
 	block    *spectra.Block // nil when it is not to be averaged
 	lost     watch.Lost     // lost frames that it touches
 	atLimit  []bool         // by channel; nil when none reached its limit
@@ -163,8 +164,9 @@ func (t *intake) cut(frames []float64) {
 // enqueue takes the block that is in the cutter. Whether a lost frame touches it is known only
 // when the source has gone on for another half length of the decimator.
 func (t *intake) enqueue(index int64) {
-	c := cut{index: index, start: index * t.hopFrames()}
-	if t.before(c) > t.frames {
+	start := index * t.hopFrames()
+	c := cut{index: index, start: start, before: start + int64(t.grid.Block)*int64(t.grid.Decimation)}
+	if c.before > t.frames {
 		return // its last sample lies in the source, but not every frame that it stands for
 	}
 	if t.wanted(&c) {
@@ -182,7 +184,7 @@ func (t *intake) enqueue(index int64) {
 // frame.
 func (t *intake) handOn(known int64) {
 	n := 0
-	for ; n < len(t.pending) && t.before(t.pending[n])+t.half <= known; n++ {
+	for ; n < len(t.pending) && t.pending[n].before+t.half <= known; n++ {
 		c := t.pending[n]
 		if !t.wanted(&c) {
 			c.overload = false
@@ -204,18 +206,13 @@ func (t *intake) handOn(known int64) {
 
 func (t *intake) hopFrames() int64 { return int64(t.grid.Hop) * int64(t.grid.Decimation) }
 
-// before is the source frame behind the block's last one.
-func (t *intake) before(c cut) int64 {
-	return c.start + int64(t.grid.Block)*int64(t.grid.Decimation)
-}
-
 // wanted writes what is known against c into it and tells whether it is to be averaged.
 func (t *intake) wanted(c *cut) bool {
-	if s, ok := t.lost.in(c.start-t.half, t.before(*c)+t.half); ok {
+	if s, ok := t.lost.in(c.start-t.half, c.before+t.half); ok {
 		c.lost = watch.Lost{StartS: float64(s.from) / t.rateHz, Frames: s.before - s.from}
 	}
 	for ch := range t.atLimit {
-		if _, ok := t.atLimit[ch].in(c.start, t.before(*c)); ok {
+		if _, ok := t.atLimit[ch].in(c.start, c.before); ok {
 			if c.atLimit == nil {
 				c.atLimit = make([]bool, len(t.atLimit))
 			}
