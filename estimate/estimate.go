@@ -11,6 +11,7 @@ package estimate
 
 import (
 	"math"
+	"slices"
 
 	"shakerwatch/acquire/rig"
 	"shakerwatch/spectra"
@@ -51,6 +52,25 @@ type Estimates struct {
 // ShapeOf is the shape of the snapshots of a rig.
 func ShapeOf(r *rig.Rig) spectra.Shape {
 	return spectra.Shape{Lines: r.Grid.Lines, Forces: len(r.Forces), Responses: len(r.Responses)}
+}
+
+// AveragingOf is how a rig's blocks are averaged: the cross-densities of its driving points are kept for
+// the error of reciprocity, those of all responses for H2.
+func AveragingOf(r *rig.Rig) spectra.Averaging {
+	a := spectra.Averaging{
+		Memory:  r.Analysis.Memory,
+		Halves:  r.Analysis.Averaging == "linear",
+		Periods: r.Periodic.KeepPeriods,
+	}
+	points := r.DrivingPoints()
+	for n := range r.Responses {
+		for o := range n {
+			if r.Analysis.Estimator == "h2" || slices.Contains(points, o) && slices.Contains(points, n) {
+				a.Pairs = append(a.Pairs, [2]int{o, n})
+			}
+		}
+	}
+	return a
 }
 
 // New makes Estimates for snapshots of the given shape. It panics when points has not one element a

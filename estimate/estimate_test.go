@@ -202,7 +202,7 @@ func TestSwappingForcesSwapsResults(t *testing.T) {
 		s := randomMade(newRand(t), 2, q, 2, 12).snapshot(newRand(t))
 		plain := estimatesOf(s, nil)
 		order := rapid.Permutation([]int{0, 1, 2}).Draw(t, "order")
-		swapped := spectra.NewSnapshot(s.Shape)
+		swapped := spectra.NewSnapshot(s.Shape, spectra.Averaging{})
 		*swapped = *s
 		swapped.Gxx, swapped.Gyx = make([]complex128, len(s.Gxx)), make([]complex128, len(s.Gyx))
 		for k := range s.Lines {
@@ -232,7 +232,7 @@ func TestForcesAlone(t *testing.T) {
 	// Two forces of levels 4 and 1 with coherence 0.36: R = [1 0.6; 0.6 1], so the condition is
 	// 1.6/0.4 = 4 and each force's coherence 0.36; Gxx = [4 1.2; 1.2 1] has the eigenvalues
 	// (5 ± sqrt(9 + 5.76))/2. Worked out by hand.
-	s := spectra.NewSnapshot(spectra.Shape{Lines: 1, Forces: 2, Responses: 1})
+	s := spectra.NewSnapshot(spectra.Shape{Lines: 1, Forces: 2, Responses: 1}, spectra.Averaging{})
 	s.Averages, s.EffectiveAverages = 10, 10
 	copy(s.Gxx, []complex128{4, 1.2i, -1.2i, 1})
 	s.Gyy[0] = 1

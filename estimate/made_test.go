@@ -18,7 +18,7 @@ type made struct {
 }
 
 func (m made) snapshot(rng *rand.Rand) *spectra.Snapshot {
-	s := spectra.NewSnapshot(m.shape)
+	s := spectra.NewSnapshot(m.shape, spectra.Averaging{})
 	s.SpacingHz = 1
 	s.Averages, s.EffectiveAverages = m.blocks, float64(m.blocks)
 	q, p := m.shape.Forces, m.shape.Responses

@@ -21,7 +21,7 @@ func TestEffectiveAverages(t *testing.T) {
 	} {
 		const n = 4096
 		hop := int(n * (1 - test.overlap))
-		e := NewEffective(Hann.Values(n), hop, 3)
+		e := NewEffective(Hann.Values(n), hop, 3, 1)
 		for k := range test.blocks {
 			e.Add(int64(3 * hop * k))
 		}
@@ -37,7 +37,7 @@ func TestEffectiveAveragesOfAnyList(t *testing.T) {
 		hop := rapid.IntRange(1, block).Draw(t, "hop")
 		d := rapid.IntRange(1, 5).Draw(t, "decimation")
 		window := Hann.Values(block)
-		e := NewEffective(window, hop, d)
+		e := NewEffective(window, hop, d, 1)
 		var starts []int64
 		at := int64(0)
 		for _, gap := range rapid.SliceOfN(rapid.Int64Range(1, 8), 1, 60).Draw(t, "gaps") {
@@ -61,7 +61,7 @@ func TestEffectiveAveragesOfAnyList(t *testing.T) {
 }
 
 func TestNoAverages(t *testing.T) {
-	e := NewEffective(Hann.Values(8), 4, 1)
+	e := NewEffective(Hann.Values(8), 4, 1, 1)
 	if got := e.Averages(); got != 0 {
 		t.Errorf("no block is worth %v averages, want 0", got)
 	}

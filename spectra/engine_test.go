@@ -23,11 +23,11 @@ func newBench(t testing.TB, shape Shape, n, blocks, workers int) *bench {
 	window := Hann.Values(n)
 	w := NewWorkers(workers)
 	t.Cleanup(w.Close)
-	b := &bench{average: NewAverage(shape, window, n/2, 1, 1024)}
+	b := &bench{average: NewAverage(shape, window, n/2, 1, 1024, Averaging{})}
 	b.engine = NewEngine(b.average, window, w)
 	rng := rand.New(rand.NewPCG(3, 4))
 	for k := range blocks {
-		block := NewBlock(shape, n)
+		block := NewBlock(shape, n, 0)
 		block.Index, block.Start = int64(k), int64(k*n/2)
 		for i := range block.Samples {
 			block.Samples[i] = rng.NormFloat64()
@@ -46,7 +46,7 @@ func (b *bench) run(batches []int) *Snapshot {
 		b.engine.Add(rest[:n])
 		rest = rest[n:]
 	}
-	s := NewSnapshot(b.average.Shape())
+	s := NewSnapshot(b.average.Shape(), Averaging{})
 	b.average.SnapshotTo(s)
 	return s
 }

@@ -66,8 +66,8 @@ func newFeed(t testing.TB, q, p, lines int) *feed {
 	f := &feed{
 		rig:      r,
 		rng:      rand.New(rand.NewPCG(1, 2)),
-		average:  spectra.NewAverage(s, window, r.Grid.Hop, r.Grid.Decimation, r.Grid.RateHz),
-		snapshot: spectra.NewSnapshot(s),
+		average:  spectra.NewAverage(s, window, r.Grid.Hop, r.Grid.Decimation, r.Grid.RateHz, spectra.Averaging{}),
+		snapshot: spectra.NewSnapshot(s, spectra.Averaging{}),
 		h:        make([]complex128, lines*p*q),
 		target:   estimate.NewTarget(r),
 		block:    make([]complex128, lines*(p+q)),

@@ -15,7 +15,7 @@ func TestLowSignal(t *testing.T) {
 	r := demo.Rig()
 	shape := estimate.ShapeOf(r)
 	n := &Noise{Force: make([]float64, shape.Lines*shape.Forces), Response: make([]float64, shape.Lines*shape.Responses)}
-	s := spectra.NewSnapshot(shape)
+	s := spectra.NewSnapshot(shape, spectra.Averaging{})
 	s.SpacingHz, s.Averages, s.EffectiveAverages = r.Grid.SpacingHz, 30, 28
 	for k := range shape.Lines {
 		for i := range shape.Forces {

@@ -198,10 +198,10 @@ func measure(t testing.TB, r *rig.Rig, s Stage, frames []float64) Measurement {
 
 	shape, n := estimate.ShapeOf(r), len(r.Channels())
 	values := spectra.Window(r.Analysis.Window).Values(r.Grid.Block)
-	average := spectra.NewAverage(shape, values, r.Grid.Hop, 1, r.Grid.RateHz)
+	average := spectra.NewAverage(shape, values, r.Grid.Hop, 1, r.Grid.RateHz, spectra.Averaging{})
 	transform := spectra.NewTransform(values)
 	cutter := spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop)
-	block := spectra.NewBlock(shape, r.Grid.Block)
+	block := spectra.NewBlock(shape, r.Grid.Block, 0)
 	scaled := slices.Clone(frames)
 	for ch, c := range r.Channels() {
 		for i := ch; i < len(scaled); i += n {
@@ -221,7 +221,7 @@ func measure(t testing.TB, r *rig.Rig, s Stage, frames []float64) Measurement {
 		average.Count(cutter.Index() * int64(r.Grid.Hop))
 		cutter.Advance()
 	}
-	snapshot := spectra.NewSnapshot(shape)
+	snapshot := spectra.NewSnapshot(shape, spectra.Averaging{})
 	average.SnapshotTo(snapshot)
 	return Measurement{Stage: s, Snapshot: snapshot, Tally: tally}
 }

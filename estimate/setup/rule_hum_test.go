@@ -74,7 +74,7 @@ func TestToneByNoiseBandwidth(t *testing.T) {
 // and 4 on the next holds 14 times the spacing.
 func TestToneAboveNoise(t *testing.T) {
 	r := parseRig(t, madeRig)
-	m := Measurement{Stage: Idle, Snapshot: spectra.NewSnapshot(estimate.ShapeOf(r))}
+	m := Measurement{Stage: Idle, Snapshot: spectra.NewSnapshot(estimate.ShapeOf(r), spectra.Averaging{})}
 	m.Snapshot.Averages = 20
 	for i := range m.Snapshot.Gyy {
 		m.Snapshot.Gyy[i] = 2

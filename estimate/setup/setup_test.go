@@ -231,7 +231,7 @@ func TestWrongShapesPanic(t *testing.T) {
 	for name, m := range map[string]Measurement{
 		"no such stage":    {Stage: 3},
 		"before the first": {Stage: -1},
-		"snapshot":         {Snapshot: spectra.NewSnapshot(spectra.Shape{Lines: 2, Forces: 1, Responses: 1})},
+		"snapshot":         {Snapshot: spectra.NewSnapshot(spectra.Shape{Lines: 2, Forces: 1, Responses: 1}, spectra.Averaging{})},
 		"tally":            {Tally: NewTally(&other)},
 	} {
 		t.Run(name, func(t *testing.T) {

@@ -32,7 +32,7 @@ type analysis struct {
 func newAnalysis(c Config, from *intake, stop func()) *analysis {
 	g := c.Rig.Grid
 	window := spectra.Window(c.Rig.Analysis.Window).Values(g.Block)
-	average := spectra.NewAverage(estimate.ShapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz)
+	average := spectra.NewAverage(estimate.ShapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz, estimate.AveragingOf(c.Rig))
 	workers := spectra.NewWorkers(c.Workers)
 	return &analysis{
 		config:  c,

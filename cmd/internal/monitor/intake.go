@@ -89,7 +89,7 @@ func newIntake(c Config, from *capture) *intake {
 	count := min(max(blockMemory/perBlock, minBlocks), maxBlocks)
 	t.free = make(chan *spectra.Block, count)
 	for range count {
-		t.free <- spectra.NewBlock(shape, r.Grid.Block)
+		t.free <- spectra.NewBlock(shape, r.Grid.Block, r.Periodic.KeepPeriods)
 	}
 	return t
 }

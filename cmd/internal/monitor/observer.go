@@ -18,7 +18,9 @@ type view struct {
 	standing []string
 }
 
-func newView(r *rig.Rig) *view { return &view{snapshot: spectra.NewSnapshot(estimate.ShapeOf(r))} }
+func newView(r *rig.Rig) *view {
+	return &view{snapshot: spectra.NewSnapshot(estimate.ShapeOf(r), estimate.AveragingOf(r))}
+}
 
 // An observer makes estimates of views, for whoever watches the run. While it is busy, the averaging
 // goes on without it.

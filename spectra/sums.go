@@ -1,0 +1,73 @@
+package spectra
+
+// sums are the summed products of some blocks, line by line.
+type sums struct {
+	gxx   []complex128 // (line, i, j); only j <= i is summed
+	gyx   []complex128 // (line, o, i)
+	gyy   []float64    // (line, o)
+	pairs []complex128 // (line, pair)
+}
+
+func newSums(shape Shape, pairs int) sums {
+	d := newDensities(shape, pairs)
+	return sums{gxx: d.Gxx, gyx: d.Gyx, gyy: d.Gyy, pairs: d.GyyPairs}
+}
+
+func (s *sums) copyFrom(from sums) {
+	copy(s.gxx, from.gxx)
+	copy(s.gyx, from.gyx)
+	copy(s.gyy, from.gyy)
+	copy(s.pairs, from.pairs)
+}
+
+// line is the part of one line.
+func (s *sums) line(shape Shape, pairs, k int) sums {
+	q, p := shape.Forces, shape.Responses
+	return sums{
+		gxx:   s.gxx[k*q*q : (k+1)*q*q],
+		gyx:   s.gyx[k*p*q : (k+1)*p*q],
+		gyy:   s.gyy[k*p : (k+1)*p],
+		pairs: s.pairs[k*pairs : (k+1)*pairs],
+	}
+}
+
+// scale multiplies all by a factor.
+func (s *sums) scale(by float64) {
+	for _, values := range [][]complex128{s.gxx, s.gyx, s.pairs} {
+		for n, v := range values {
+			values[n] = complex(by*real(v), by*imag(v))
+		}
+	}
+	for n := range s.gyy {
+		s.gyy[n] *= by
+	}
+}
+
+// add adds the products of one line of one block.
+func (s *sums) add(x, y []complex128, pairs [][2]int) {
+	q := len(x)
+	for i, xi := range x {
+		row := s.gxx[i*q : i*q+i+1]
+		for j := range row {
+			row[j] += product(xi, x[j])
+		}
+	}
+	for o, yo := range y {
+		row := s.gyx[o*q : (o+1)*q]
+		for i := range row {
+			row[i] += product(yo, x[i])
+		}
+		s.gyy[o] += real(product(yo, yo))
+	}
+	for n, pair := range pairs {
+		s.pairs[n] += product(y[pair[0]], y[pair[1]])
+	}
+}
+
+// product is a b*, written out because the language's complex product checks for infinities.
+func product(a, b complex128) complex128 {
+	return complex(
+		real(a)*real(b)+imag(a)*imag(b),
+		imag(a)*real(b)-real(a)*imag(b),
+	)
+}
