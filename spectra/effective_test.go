@@ -37,7 +37,8 @@ func TestEffectiveAveragesOfAnyList(t *testing.T) {
 		hop := rapid.IntRange(1, block).Draw(t, "hop")
 		d := rapid.IntRange(1, 5).Draw(t, "decimation")
 		window := Hann.Values(block)
-		e := NewEffective(window, hop, d, 1)
+		decay := rapid.SampledFrom([]float64{1, 0.5, 0.9, 0.99}).Draw(t, "decay")
+		e := NewEffective(window, hop, d, decay)
 		var starts []int64
 		at := int64(0)
 		for _, gap := range rapid.SliceOfN(rapid.Int64Range(1, 8), 1, 60).Draw(t, "gaps") {
@@ -46,14 +47,17 @@ func TestEffectiveAveragesOfAnyList(t *testing.T) {
 			e.Add(at)
 		}
 		// The definition, over all pairs.
-		var sum float64
-		for _, a := range starts {
-			for _, b := range starts {
+		var sum, weight float64
+		for i, a := range starts {
+			wa := math.Pow(decay, float64(len(starts)-1-i))
+			weight += wa
+			for j, b := range starts {
+				wb := math.Pow(decay, float64(len(starts)-1-j))
 				rho := OverlapCorrelation(window, int(max(a-b, b-a))/d)
-				sum += rho * rho
+				sum += wa * wb * rho * rho
 			}
 		}
-		want := float64(len(starts)*len(starts)) / sum
+		want := weight * weight / sum
 		if got := e.Averages(); math.Abs(got-want) > 1e-12*want {
 			t.Fatalf("%v, want %v", got, want)
 		}
