@@ -111,6 +111,12 @@ func (c Channel) Sign() float64 {
 	return 1
 }
 
+// BlockFrames is the number of source frames from the first to the last one of a block, of all
+// periods that are kept with periodic excitation.
+func (r *Rig) BlockFrames() int64 {
+	return int64(r.Grid.Block) * int64(r.Grid.Decimation) * int64(max(r.Periodic.KeepPeriods, 1))
+}
+
 // Grid is what the analysis settings resolve to.
 type Grid struct {
 	Decimation int     // d: one analysis sample every d source frames

@@ -43,8 +43,10 @@ func lastBlockEnd(m measurement) int64 {
 	if m.frames == 0 {
 		return 0
 	}
-	hop := int64(m.rig.Grid.Hop) * int64(m.rig.Grid.Decimation)
-	block := blockFrames(m.rig)
+	hop, block := int64(m.rig.Grid.Hop)*int64(m.rig.Grid.Decimation), m.rig.BlockFrames()
+	if hop == 0 {
+		return m.frames // where blocks lie is in the signals
+	}
 	return (m.frames-block)/hop*hop + block
 }
 

@@ -58,14 +58,11 @@ func fits(r *rig.Rig, recording *wav.Reader, path string) error {
 	if err := r.CheckStream(path, recording.RateHz(), recording.Channels()); err != nil {
 		return err
 	}
-	if frames := blockFrames(r); recording.Frames() < frames {
+	if frames := r.BlockFrames(); recording.Frames() < frames {
 		return fmt.Errorf("%s: %d frames are less than one block of %d: give a longer recording, or choose a wider line_spacing", path, recording.Frames(), frames)
 	}
 	return nil
 }
-
-// blockFrames is the number of source frames in a block.
-func blockFrames(r *rig.Rig) int64 { return int64(r.Grid.Block) * int64(r.Grid.Decimation) }
 
 // onlyStarts reads the block starts that --only names and checks that they are blocks of this
 // recording. It returns nil without --only.
@@ -77,15 +74,19 @@ func (a *app) onlyStarts(r *rig.Rig, frames int64) ([]int64, error) {
 	if err != nil {
 		return nil, err
 	}
-	hop := int64(r.Grid.Hop) * int64(r.Grid.Decimation)
+	d := int64(r.Grid.Decimation)
+	step, apart := int64(r.Grid.Hop)*d, int64(1)
+	if step == 0 { // blocks that are found in the signals lie anywhere, but never overlap
+		step, apart = d, r.BlockFrames()
+	}
 	for i, s := range starts {
 		switch {
-		case s < 0 || s%hop != 0:
+		case s < 0 || s%step != 0:
 			return nil, fmt.Errorf("%s: no block of %s starts at frame %d: give the summary of a run with the same [analysis]", a.only, r.Path, s)
-		case s+blockFrames(r) > frames:
+		case s+r.BlockFrames() > frames:
 			return nil, fmt.Errorf("%s: the block at frame %d lies beyond the %d frames of the recording: give the summary of this recording", a.only, s, frames)
-		case i > 0 && s <= starts[i-1]:
-			return nil, fmt.Errorf("%s: block_starts are not in ascending order at frame %d: give a summary as it was written", a.only, s)
+		case i > 0 && s < starts[i-1]+apart:
+			return nil, fmt.Errorf("%s: block_starts are not in ascending order, or too close, at frame %d: give a summary as it was written", a.only, s)
 		}
 	}
 	if starts == nil {

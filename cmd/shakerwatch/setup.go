@@ -48,6 +48,7 @@ func (a *app) checkSetup(ctx context.Context, in *input) (err error) {
 			err = closeErr
 		}
 	}()
+	in.rig = in.rig.Continuous() // with the shakers off there is no burst and no period to find
 	c := &setupCheck{app: a, in: in, board: board, lines: a.enters(in.kind), blocks: setupBlocks}
 	if a.blocks > 0 {
 		c.blocks = a.blocks

@@ -18,9 +18,10 @@ type analysis struct {
 	engine  *spectra.Engine
 	watch   *watch.Watch
 
-	counts Counts
-	timeS  float64 // at the end of the last block seen
-	events []watch.Event
+	counts  Counts
+	timeS   float64 // at the end of the last block seen
+	trouble string  // what keeps blocks from being found, empty for nothing
+	events  []watch.Event
 
 	// Those waiting, scratch of one batch.
 	batch     []cut
@@ -88,6 +89,10 @@ func (a *analysis) work() {
 	for _, c := range a.batch {
 		if a.complete() {
 			break // blocks behind the last one wanted are neither seen nor set aside
+		}
+		if c.notice {
+			a.trouble, a.timeS = c.trouble, float64(c.before)/a.config.Rig.Source.RateHz
+			continue
 		}
 		a.judge(c)
 	}
@@ -164,6 +169,9 @@ func (a *analysis) viewTo(v *view) {
 	a.average.SnapshotTo(v.snapshot)
 	v.counts, v.timeS = a.counts, a.timeS
 	v.standing = a.watch.Standing(v.standing[:0])
+	if a.trouble != "" {
+		v.standing = append(v.standing, a.trouble)
+	}
 	if a.config.Trouble != nil {
 		v.standing = append(v.standing, a.config.Trouble()...)
 	}

@@ -21,6 +21,11 @@ type cut struct {
 	atLimit  []bool         // by channel; nil when none reached its limit
 	overload bool           // no memory was free: the arithmetic is too slow
 	gaps     int64          // stretches of lost frames up to here
+
+	// notice says that this is no block: trouble is what has begun to keep blocks from being found, or
+	// empty when that is over.
+	notice  bool
+	trouble string
 }
 
 // intake turns chunks into engineering units, decimates them and cuts them into blocks.
@@ -38,14 +43,18 @@ type intake struct {
 	grid    rig.Grid
 	half    int64 // the decimator's half length, source frames
 
+	blockFrames int64 // source frames in a block, all its periods
+
 	filter  *decimate.Filter
-	cutter  *spectra.Cutter
+	cutter  cutter
+	trouble string // the cutter's, when it was last told
 	meter   *meter
 	lost    marks
 	atLimit []marks // by channel
 	pending []cut   // in order
 
 	frames    int64 // source frames taken, lost ones among them
+	cutFrames int64 // analysis frames that the cutter has taken
 	gaps      int64 // stretches of lost frames so far
 	gapBefore bool  // the newest frame was a lost one
 	scaled    []float64
@@ -76,16 +85,20 @@ func newIntake(c Config, from *capture) *intake {
 		rateHz:   r.Source.RateHz,
 		grid:     r.Grid,
 		half:     int64(decimate.HalfLength(r.Grid.Decimation)),
-		filter:   decimate.New(r.Grid.Decimation, n),
-		cutter:   spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop),
-		meter:    newMeter(r, c.OnLevels),
-		atLimit:  make([]marks, n),
-		zeros:    make([]float64, zeroFrames*n),
+
+		blockFrames: r.BlockFrames(),
+
+		filter:  decimate.New(r.Grid.Decimation, n),
+		cutter:  newCutter(r, c.Only),
+		meter:   newMeter(r, c.OnLevels),
+		atLimit: make([]marks, n),
+		zeros:   make([]float64, zeroFrames*n),
 	}
 	for _, ch := range r.Channels() {
 		t.factors = append(t.factors, ch.Scale())
 	}
-	perBlock := bytesPerFloat * (n*r.Grid.Block + 2*n*shape.Lines)
+	periods := r.Periodic.KeepPeriods
+	perBlock := bytesPerFloat * (n*r.Grid.Block*max(periods, 1) + 2*n*shape.Lines*(1+periods))
 	count := min(max(blockMemory/perBlock, minBlocks), maxBlocks)
 	t.free = make(chan *spectra.Block, count)
 	for range count {
@@ -129,7 +142,7 @@ func (t *intake) take(frames []float64) {
 	}
 	t.analysis = t.filter.Append(t.analysis[:0], t.scaled)
 	t.cut(t.analysis)
-	t.meter.show(float64(t.frames)/t.rateHz, float64(t.cutter.Filled())/float64(t.grid.Block))
+	t.meter.show(float64(t.frames)/t.rateHz, t.cutter.Filled())
 }
 
 // skip takes lost frames, which the decimator sees as zeros.
@@ -151,21 +164,47 @@ func (t *intake) skip(frames int64) {
 // cut takes analysis frames and hands on every block that they complete.
 func (t *intake) cut(frames []float64) {
 	for len(frames) > 0 {
-		frames = frames[t.cutter.Put(frames):]
-		if t.cutter.Full() {
-			t.enqueue(t.cutter.Index())
+		run, lost := t.alike(frames)
+		taken := t.cutter.Put(run, lost)
+		frames = frames[taken:]
+		t.cutFrames += int64(taken / len(t.factors))
+		for t.cutter.Full() {
+			t.enqueue()
 			t.cutter.Advance()
 			t.handOn(t.frames)
 		}
 	}
 	t.handOn(t.frames)
+	if now := t.cutter.Trouble(); now != t.trouble {
+		t.trouble = now
+		t.cuts <- cut{notice: true, trouble: now, before: t.frames}
+	}
+}
+
+// alike is the beginning of frames that stands for lost frames throughout or not at all, and which
+// of the two. What a lost frame reaches through the decimator counts as lost.
+func (t *intake) alike(frames []float64) (run []float64, lost bool) {
+	if len(t.lost.spans) == 0 {
+		return frames, false
+	}
+	n, d := len(t.factors), int64(t.grid.Decimation)
+	isLost := func(at int64) bool {
+		_, lost := t.lost.in(at*d-t.half, at*d+t.half+1)
+		return lost
+	}
+	lost = isLost(t.cutFrames)
+	count := 1
+	for count*n < len(frames) && isLost(t.cutFrames+int64(count)) == lost {
+		count++
+	}
+	return frames[:count*n], lost
 }
 
 // enqueue takes the block that is in the cutter. Whether a lost frame touches it is known only
 // when the source has gone on for another half length of the decimator.
-func (t *intake) enqueue(index int64) {
-	start := index * t.hopFrames()
-	c := cut{index: index, start: start, before: start + int64(t.grid.Block)*int64(t.grid.Decimation)}
+func (t *intake) enqueue() {
+	start := t.cutter.Start() * int64(t.grid.Decimation)
+	c := cut{index: t.cutter.Index(), start: start, before: start + t.blockFrames}
 	if c.before > t.frames {
 		return // its last sample lies in the source, but not every frame that it stands for
 	}
@@ -195,16 +234,23 @@ func (t *intake) handOn(known int64) {
 		}
 		c.gaps = t.gaps
 		t.cuts <- c
-		next := c.start + t.hopFrames()
-		t.lost.forget(next - t.half)
-		for ch := range t.atLimit {
-			t.atLimit[ch].forget(next)
-		}
 	}
 	t.pending = t.pending[:copy(t.pending, t.pending[n:])]
+	t.forget()
 }
 
-func (t *intake) hopFrames() int64 { return int64(t.grid.Hop) * int64(t.grid.Decimation) }
+// forget drops the marks that no later block can touch.
+func (t *intake) forget() {
+	d := int64(t.grid.Decimation)
+	next := t.cutter.Oldest() * d
+	if len(t.pending) > 0 {
+		next = min(next, t.pending[0].start)
+	}
+	t.lost.forget(min(next, t.cutFrames*d) - t.half)
+	for ch := range t.atLimit {
+		t.atLimit[ch].forget(next)
+	}
+}
 
 // wanted writes what is known against c into it and tells whether it is to be averaged.
 func (t *intake) wanted(c *cut) bool {

@@ -80,12 +80,18 @@ func (j *judge) verdict(v *view, e *estimate.Estimates) estimate.Verdict {
 }
 
 func newStatus(r *rig.Rig, c Counts, timeS float64, s *spectra.Snapshot, p *estimate.Progress, v estimate.Verdict) web.Status {
-	hopS := float64(r.Grid.Hop) / r.Grid.RateHz
+	blockS := math.NaN() // from one averaged block to the next, all things considered
+	if c.Averaged > 0 {
+		blockS = timeS / float64(c.Averaged)
+	}
+	if r.Grid.Hop > 0 {
+		blockS = float64(r.Grid.Hop) / r.Grid.RateHz
+	}
 	return web.Status{
 		TimeS: timeS, Seen: c.Seen, Averaged: c.Averaged, SetAside: c.SetAside,
 		EffectiveAverages: s.EffectiveAverages,
 		AveragesNeeded:    p.AveragesNeeded,
-		TimeToGoS:         estimate.Number(math.Max(0, float64(p.AveragesNeeded)-float64(c.Averaged)) * hopS),
+		TimeToGoS:         estimate.Number(math.Max(0, float64(p.AveragesNeeded)-float64(c.Averaged)) * blockS),
 		Verdict:           v,
 		Progress:          p,
 		Gxx:               s.Gxx,
