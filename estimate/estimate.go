@@ -25,13 +25,18 @@ type DrivingPoint struct {
 
 // Estimates are all estimates of one snapshot. Arrays lie line by line, like those of the
 // snapshot; L, p, q and K are the numbers of lines, responses, forces and reciprocity pairs.
+//
+// All but the principal forces is NaN while M < q and where Gxx has no inverse, coherences with responses
+// while M <= q too, errors and radii while n_e <= q; all three also at a silent response, whose H is 0.
 type Estimates struct {
 	spectra.Shape
 	FrequencyHz []float64 // (L)
 
-	H                 []complex128 // (L,p,q) frequency responses by H1, m/s²/N
-	MultipleCoherence []float64    // (L,p) in [0, 1]
+	H                 []complex128 // (L,p,q) frequency responses by Method's estimator, m/s²/N
+	MultipleCoherence []float64    // (L,p) by H1, in [0, 1]
+	PartialCoherence  []float64    // (L,p,q) by H1, in [0, 1]
 	RandomError       []float64    // (L,p,q) relative standard deviation of |H|
+	ConfidenceRadius  []float64    // (L,p,q) of the region around H that holds the truth, m/s²/N
 
 	ForceCondition    []float64 // (L) of Gxx scaled to a unit diagonal: correlation alone
 	ForceConditionRaw []float64 // (L) of Gxx: correlation and level differences
@@ -43,10 +48,17 @@ type Estimates struct {
 
 	Averages          int     // M
 	EffectiveAverages float64 // n_e
+	Chance            ChanceLevels
 
-	points []DrivingPoint // (q)
-	forces *forceLine
-	row    []complex128 // (q) scratch
+	Method Method // as given to New, with its defaults
+
+	points   []DrivingPoint // (q)
+	forces   *forceLine
+	h2       *h2Line           // nil unless it is the estimator
+	hv       *hvLine           // nil unless it is the estimator
+	periods  *differentPeriods // nil unless the average has periods
+	row      []complex128      // (q) scratch
+	variance []float64         // (p,q) complex variance of H at the line at hand
 }
 
 // ShapeOf is the shape of the snapshots of a rig.
@@ -73,30 +85,42 @@ func AveragingOf(r *rig.Rig) spectra.Averaging {
 	return a
 }
 
-// New makes Estimates for snapshots of the given shape. It panics when points has not one element a
-// force.
-func New(shape spectra.Shape, points []DrivingPoint) *Estimates {
-	if len(points) != shape.Forces {
-		panic("estimate: one driving point a force, please")
-	}
+// New makes Estimates for snapshots of the given shape, of which and of whose noise densities it
+// keeps hold: they must not change. It panics when m does not go with shape.
+func New(shape spectra.Shape, m Method) *Estimates {
+	m = m.checked(shape)
 	l, p, q := shape.Lines, shape.Responses, shape.Forces
-	pairs := ReciprocityPairs(points)
-	return &Estimates{
+	pairs := ReciprocityPairs(m.Points)
+	e := &Estimates{
 		Shape:             shape,
 		FrequencyHz:       make([]float64, l),
 		H:                 make([]complex128, l*p*q),
 		MultipleCoherence: make([]float64, l*p),
+		PartialCoherence:  make([]float64, l*p*q),
 		RandomError:       make([]float64, l*p*q),
+		ConfidenceRadius:  make([]float64, l*p*q),
 		ForceCondition:    make([]float64, l),
 		ForceConditionRaw: make([]float64, l),
 		ForceCoherence:    make([]float64, l*q),
 		PrincipalForces:   make([]float64, l*q),
 		ReciprocityPairs:  pairs,
 		ReciprocityError:  make([]float64, l*len(pairs)),
-		points:            points,
+		Method:            m,
+		points:            m.Points,
 		forces:            newForceLine(q),
 		row:               make([]complex128, q),
+		variance:          make([]float64, p*q),
 	}
+	switch m.Estimator {
+	case H2:
+		e.h2 = newH2Line(q, m.Averaging.Pairs)
+	case HV:
+		e.hv = newHVLine(q)
+	}
+	if m.Averaging.Periods > 0 {
+		e.periods = newDifferentPeriods(q)
+	}
+	return e
 }
 
 // Update fills e with the estimates of s. It allocates nothing, and panics when s has another shape.
@@ -104,13 +128,20 @@ func (e *Estimates) Update(s *spectra.Snapshot) {
 	if s.Shape != e.Shape {
 		panic("estimate: snapshot has another shape")
 	}
+	if e.h2 != nil && len(s.GyyPairs) != e.Lines*len(e.Method.Averaging.Pairs) || e.periods != nil && s.Periods == 0 {
+		panic("estimate: snapshot is averaged in another way")
+	}
 	e.Averages, e.EffectiveAverages = s.Averages, s.EffectiveAverages
+	e.Chance = NewChanceLevels(e.Forces, e.EffectiveAverages)
+	region := RegionFactor(e.Forces, e.EffectiveAverages, e.Method.Level, e.Method.Simultaneous)
 	for k := range e.Lines {
 		e.FrequencyHz[k] = s.FrequencyHz(k)
 		e.forceEstimates(s, k)
 		for o := range e.Responses {
 			e.responseEstimates(s, k, o)
 		}
+		e.chosenEstimates(s, k)
+		e.errorEstimates(k, region)
 		e.reciprocityEstimates(s, k)
 	}
 }
@@ -123,7 +154,7 @@ func (e *Estimates) forceEstimates(s *spectra.Snapshot, k int) {
 	f.principalTo(e.PrincipalForces[k*q : (k+1)*q])
 
 	coherence := e.ForceCoherence[k*q : (k+1)*q]
-	if e.Averages < q || !f.regular {
+	if !e.solvable() {
 		e.ForceCondition[k], e.ForceConditionRaw[k] = math.NaN(), math.NaN()
 		fill(coherence, math.NaN())
 		return
@@ -135,17 +166,22 @@ func (e *Estimates) forceEstimates(s *spectra.Snapshot, k int) {
 	}
 }
 
-// responseEstimates fills the estimates of response o at line k.
+// solvable tells whether the line at hand can have frequency responses.
+func (e *Estimates) solvable() bool { return e.Averages >= e.Forces && e.forces.regular }
+
+// responseEstimates fills the estimates of response o at line k by H1.
 func (e *Estimates) responseEstimates(s *spectra.Snapshot, k, o int) {
 	q := e.Forces
 	at := k*e.Responses + o
 	h := e.H[at*q : (at+1)*q]
-	randomError := e.RandomError[at*q : (at+1)*q]
+	partial := e.PartialCoherence[at*q : (at+1)*q]
+	variance := e.variance[o*q : (o+1)*q]
 	gyy := s.Gyy[at]
 
 	e.MultipleCoherence[at] = math.NaN()
-	fill(randomError, math.NaN())
-	if e.Averages < q || !e.forces.regular {
+	fill(partial, math.NaN())
+	fill(variance, math.NaN())
+	if !e.solvable() {
 		fill(h, complex(math.NaN(), math.NaN()))
 		return
 	}
@@ -155,12 +191,34 @@ func (e *Estimates) responseEstimates(s *spectra.Snapshot, k, o int) {
 	}
 	g2 := MultipleCoherence(explained, gyy)
 	e.MultipleCoherence[at] = g2
-	if !(e.EffectiveAverages > float64(q)) {
-		return
+	for i, inverse := range e.forces.inverses {
+		partial[i] = PartialCoherence(h[i], gyy, g2, inverse)
+		variance[i] = HVariance(gyy, g2, inverse, q, e.EffectiveAverages)
 	}
-	for i := range randomError {
-		variance := HVariance(gyy, g2, e.forces.inverse(i), q, e.EffectiveAverages)
-		randomError[i] = RelativeError(variance, h[i])
+}
+
+// chosenEstimates replaces H of line k where it is not to be by H1, and its variance where another one
+// than HVariance is known.
+func (e *Estimates) chosenEstimates(s *spectra.Snapshot, k int) {
+	switch {
+	case !e.solvable():
+	case e.periods != nil:
+		h := e.H[k*len(e.variance) : (k+1)*len(e.variance)]
+		e.periods.hTo(h, s, k)
+		e.periods.varianceTo(e.variance, h, s, k)
+	case e.h2 != nil:
+		e.byH2(s, k)
+	case e.hv != nil:
+		e.byHV(s, k)
+	}
+}
+
+// errorEstimates fills the errors of line k, H being there already; region is the RegionFactor.
+func (e *Estimates) errorEstimates(k int, region float64) {
+	from := k * len(e.variance)
+	for n, variance := range e.variance {
+		e.RandomError[from+n] = RelativeError(variance, e.H[from+n])
+		e.ConfidenceRadius[from+n] = math.Sqrt(variance * region)
 	}
 }
 

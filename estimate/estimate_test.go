@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/stat/distuv"
@@ -291,11 +292,43 @@ func TestSkewTurnsThePhase(t *testing.T) {
 	}
 }
 
+// TestPeriodsTakeTheNoiseOut: where the average has periods, H = Gyx / (Gxx - Nxx/K), and error and radius
+// go with the variance that this H has.
+func TestPeriodsTakeTheNoiseOut(t *testing.T) {
+	m := randomMade(rand.New(rand.NewPCG(1, 1)), 3, 1, 1, 20)
+	m.averaging.Periods = 2
+	s := m.snapshot(rand.New(rand.NewPCG(2, 2)))
+	for k, v := range s.Gxx {
+		s.Noise.Gxx[k] = 0.2 * v
+	}
+	e, h1 := by("", s, nil, nil), estimatesOf(s, nil)
+	for k, h := range e.H {
+		if want := h1.H[k] / 0.9; cmplx.Abs(h-want) > 1e-13*cmplx.Abs(want) {
+			t.Errorf("H is %v, want %v", h, want)
+		}
+		deviation := e.RandomError[k] * cmplx.Abs(h)
+		if want := math.Sqrt(2*RegionFactor(1, 20, DefaultLevel, false)) * deviation; math.Abs(e.ConfidenceRadius[k]/want-1) > 1e-12 {
+			t.Errorf("radius %v, want %v", e.ConfidenceRadius[k], want)
+		}
+		if e.ConfidenceRadius[k] < 1.1*h1.ConfidenceRadius[k] {
+			t.Errorf("radius %v, by H1 %v: noise on the force costs nothing", e.ConfidenceRadius[k], h1.ConfidenceRadius[k])
+		}
+	}
+}
+
 func TestUpdateAllocatesNothing(t *testing.T) {
-	s := randomMade(rand.New(rand.NewPCG(1, 1)), 50, 3, 4, 20).snapshot(rand.New(rand.NewPCG(2, 2)))
-	e := New(s.Shape, noPoints(3))
-	if allocs := testing.AllocsPerRun(20, func() { e.Update(s) }); allocs != 0 {
-		t.Errorf("%v allocations an update, want none", allocs)
+	m := randomMade(rand.New(rand.NewPCG(1, 1)), 50, 3, 3, 20)
+	m.averaging.Pairs = allPairs(3)
+	s := m.snapshot(rand.New(rand.NewPCG(2, 2)))
+	noise := slices.Repeat([]float64{1}, 150)
+	for _, method := range []Method{
+		{Estimator: H1}, {Estimator: H2}, {Estimator: HV}, {Estimator: HV, NoiseForce: noise, NoiseResponse: noise}, {Simultaneous: true},
+	} {
+		method.Points, method.Averaging = noPoints(3), s.Averaging
+		e := New(s.Shape, method)
+		if allocs := testing.AllocsPerRun(20, func() { e.Update(s) }); allocs != 0 {
+			t.Errorf("%s, whitened %v: %v allocations an update, want none", method.Estimator, method.whitens(), allocs)
+		}
 	}
 }
 
@@ -303,10 +336,15 @@ func BenchmarkUpdate(b *testing.B) {
 	for _, size := range []struct {
 		name        string
 		lines, q, p int
-	}{{"2x12", 1601, 2, 12}, {"8x504", 801, 8, 504}} {
+		estimator   string
+	}{{"2x12", 1601, 2, 12, H1}, {"8x504", 801, 8, 504, H1}, {"8x8 h2", 801, 8, 8, H2}, {"2x12 hv", 1601, 2, 12, HV}, {"8x504 hv", 801, 8, 504, HV}} {
 		b.Run(size.name, func(b *testing.B) {
-			s := randomMade(rand.New(rand.NewPCG(1, 1)), size.lines, size.q, size.p, 10).snapshot(rand.New(rand.NewPCG(2, 2)))
-			e := New(s.Shape, noPoints(size.q))
+			m := randomMade(rand.New(rand.NewPCG(1, 1)), size.lines, size.q, size.p, 10)
+			if size.estimator == H2 {
+				m.averaging.Pairs = allPairs(size.p)
+			}
+			s := m.snapshot(rand.New(rand.NewPCG(2, 2)))
+			e := New(s.Shape, Method{Points: noPoints(size.q), Estimator: size.estimator, Averaging: s.Averaging})
 			for b.Loop() {
 				e.Update(s)
 			}

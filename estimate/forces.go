@@ -1,9 +1,6 @@
 package estimate
 
-import (
-	"math"
-	"math/cmplx"
-)
+import "math"
 
 // minEigenvalue is the smallest eigenvalue of the unit-diagonal Gxx with which it still counts as
 // invertible; below it twelve digits of the answer are gone.
@@ -18,6 +15,7 @@ type forceLine struct {
 	r         []complex128 // (q,q) R; destroyed
 	l         []complex128 // (q,q) R = L L^H, lower triangle
 	inverseR  []float64    // (q) diagonal of R^-1
+	inverses  []float64    // (q) diagonal of Gxx^-1
 	eigenR    []float64    // (q) eigenvalues of R, largest first
 	gxx       []complex128 // (q,q) copy of Gxx; destroyed
 	principal []float64    // (q) eigenvalues of Gxx, largest first
@@ -30,6 +28,7 @@ func newForceLine(q int) *forceLine {
 		r:         make([]complex128, q*q),
 		l:         make([]complex128, q*q),
 		inverseR:  make([]float64, q),
+		inverses:  make([]float64, q),
 		eigenR:    make([]float64, q),
 		gxx:       make([]complex128, q*q),
 		principal: make([]float64, q),
@@ -48,7 +47,7 @@ func (f *forceLine) factor(gxx []complex128) {
 	for i := range q {
 		for j := range q {
 			// A silent force makes this 0/0, and so every result NaN.
-			f.r[i*q+j] = gxx[i*q+j] / complex(f.s[i], 0) / complex(f.s[j], 0)
+			f.r[i*q+j] = divide(gxx[i*q+j], f.s[i], f.s[j])
 		}
 		f.r[i*q+i] = complex(real(gxx[i*q+i])/f.s[i]/f.s[i], 0)
 	}
@@ -60,7 +59,7 @@ func (f *forceLine) factor(gxx []complex128) {
 	}
 }
 
-// invert fills the diagonal of R^-1 = L^-H L^-1, column by column of L^-1.
+// invert fills the diagonals of R^-1 = L^-H L^-1, column by column of L^-1, and of Gxx^-1.
 func (f *forceLine) invert() {
 	for i := range f.inverseR {
 		fill(f.column, 0)
@@ -70,6 +69,7 @@ func (f *forceLine) invert() {
 		for _, v := range f.column {
 			f.inverseR[i] += abs2(v)
 		}
+		f.inverses[i] = f.inverseR[i] / f.s[i] / f.s[i]
 	}
 }
 
@@ -109,9 +109,7 @@ func (f *forceLine) coherence(i int) float64 {
 }
 
 // inverse is [Gxx^-1]_ii.
-func (f *forceLine) inverse(i int) float64 {
-	return f.inverseR[i] / f.s[i] / f.s[i]
-}
+func (f *forceLine) inverse(i int) float64 { return f.inverses[i] }
 
 // solve writes the row h = g Gxx^-1 (H1 of one response) and returns g Gxx^-1 g^H, the part of the
 // response's density that the forces explain. z is scratch of the same length.
@@ -120,7 +118,7 @@ func (f *forceLine) inverse(i int) float64 {
 // first: no negative value can come out.
 func (f *forceLine) solve(h, g, z []complex128) (explained float64) {
 	for i, v := range g {
-		z[i] = cmplx.Conj(v) / complex(f.s[i], 0)
+		z[i] = complex(real(v)/f.s[i], -imag(v)/f.s[i])
 	}
 	solveLower(f.l, z)
 	for _, v := range z {
@@ -128,7 +126,7 @@ func (f *forceLine) solve(h, g, z []complex128) (explained float64) {
 	}
 	solveLowerAdjoint(f.l, z)
 	for i, v := range z {
-		h[i] = cmplx.Conj(v) / complex(f.s[i], 0)
+		h[i] = complex(real(v)/f.s[i], -imag(v)/f.s[i])
 	}
 	return explained
 }

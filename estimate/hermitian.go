@@ -38,7 +38,7 @@ func solveLower(l, b []complex128) {
 		for k := range i {
 			b[i] -= l[i*n+k] * b[k]
 		}
-		b[i] /= l[i*n+i]
+		b[i] = divide(b[i], real(l[i*n+i]), 1)
 	}
 }
 
@@ -49,7 +49,7 @@ func solveLowerAdjoint(l, b []complex128) {
 		for k := i + 1; k < n; k++ {
 			b[i] -= cmplx.Conj(l[k*n+i]) * b[k]
 		}
-		b[i] /= l[i*n+i]
+		b[i] = divide(b[i], real(l[i*n+i]), 1)
 	}
 }
 
@@ -57,25 +57,36 @@ func solveLowerAdjoint(l, b []complex128) {
 // time that a matrix with NaN in it can take.
 const maxSweeps = 40
 
-// eigenvalues writes the eigenvalues of the Hermitian a, largest first, into dst, and destroys a.
-// All are NaN when a holds a value that is not finite.
+// diagonalise makes the n by n Hermitian a diagonal, a' = V a V^H, and writes the unitary V into v (n,n)
+// unless v is nil: a' has the eigenvalues, in no order, and row k of V is the adjoint of the
+// eigenvector of the k-th. What is not finite in a is so afterwards.
 //
 // Cyclic Jacobi (Golub and Van Loan, section 8.5), which finds small eigenvalues of a badly scaled
 // positive matrix as precisely as its entries define them (Demmel and Veselić, SIAM J. Matrix Anal.
 // Appl. 13, 1992).
-func eigenvalues(dst []float64, a []complex128) {
-	n := len(dst)
+func diagonalise(a, v []complex128, n int) {
+	fill(v, 0)
+	for i := 0; i < len(v); i += n + 1 {
+		v[i] = 1
+	}
 	for range maxSweeps {
 		rotated := false
 		for i := 1; i < n; i++ {
 			for j := range i {
-				rotated = rotate(a, n, j, i) || rotated
+				rotated = rotate(a, v, n, j, i) || rotated
 			}
 		}
 		if !rotated {
-			break
+			return
 		}
 	}
+}
+
+// eigenvalues writes the eigenvalues of the Hermitian a, largest first, into dst, and destroys a.
+// All are NaN when a holds a value that is not finite.
+func eigenvalues(dst []float64, a []complex128) {
+	n := len(dst)
+	diagonalise(a, nil, n)
 	for i := range dst {
 		dst[i] = real(a[i*n+i])
 	}
@@ -97,8 +108,8 @@ func eigenvalues(dst []float64, a []complex128) {
 }
 
 // rotate makes a[i,j] zero by a unitary rotation of rows and columns i and j, i < j, and tells
-// whether that changed anything.
-func rotate(a []complex128, n, i, j int) bool {
+// whether that changed anything. The rows of v, unless it is nil, turn along.
+func rotate(a, v []complex128, n, i, j int) bool {
 	off := a[i*n+j]
 	size := math.Hypot(real(off), imag(off))
 	aii, ajj := real(a[i*n+i]), real(a[j*n+j])
@@ -126,7 +137,19 @@ func rotate(a []complex128, n, i, j int) bool {
 	a[i*n+i] = complex(aii-t*size, 0)
 	a[j*n+j] = complex(ajj+t*size, 0)
 	a[i*n+j], a[j*n+i] = 0, 0
+	if v != nil {
+		turn(v[i*n:(i+1)*n], v[j*n:(j+1)*n], c, s)
+	}
 	return true
+}
+
+// turn replaces the rows a and b by c a - s b and s* a + c b.
+func turn(a, b []complex128, c float64, s complex128) {
+	for k, ak := range a {
+		bk := b[k]
+		a[k] = complex(c, 0)*ak - s*bk
+		b[k] = cmplx.Conj(s)*ak + complex(c, 0)*bk
+	}
 }
 
 const epsilon = 0x1p-53

@@ -60,6 +60,45 @@ func TestEigenvaluesAgainstLAPACK(t *testing.T) {
 	})
 }
 
+// TestDiagonaliseGivesTheMatrixBack: V is unitary and V^H D V the matrix.
+func TestDiagonaliseGivesTheMatrixBack(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		n := rapid.IntRange(1, 8).Draw(t, "n")
+		rng := rand.New(rand.NewPCG(rapid.Uint64().Draw(t, "seed"), 3))
+		a := randomHermitian(rng, n, rapid.IntRange(1, 12).Draw(t, "rank"))
+		d, v := slices.Clone(a), make([]complex128, n*n)
+		diagonalise(d, v, n)
+		for i := range n {
+			for j := range n {
+				var unit, back complex128
+				for k := range n {
+					unit += v[i*n+k] * cmplx.Conj(v[j*n+k])
+					back += cmplx.Conj(v[k*n+i]) * d[k*n+k] * v[k*n+j]
+				}
+				if i == j {
+					unit--
+				} else if cmplx.Abs(d[i*n+j]) > 1e-15*trace(a, n) {
+					t.Fatalf("%v is left at %d,%d", d[i*n+j], i, j)
+				}
+				if cmplx.Abs(unit) > 1e-13 {
+					t.Fatalf("rows %d and %d of V are off unitary by %v", i, j, unit)
+				}
+				if cmplx.Abs(back-a[i*n+j]) > 1e-13*trace(a, n) {
+					t.Fatalf("V^H D V has %v at %d,%d, want %v", back, i, j, a[i*n+j])
+				}
+			}
+		}
+	})
+}
+
+func trace(a []complex128, n int) float64 {
+	sum := 0.0
+	for i := range n {
+		sum += real(a[i*n+i])
+	}
+	return sum
+}
+
 func TestEigenvaluesKeepTheirPrecisionWhenBadlyScaled(t *testing.T) {
 	// diag(1, 1e-12) [1 c; c* 1] diag(1, 1e-12) with |c| = 0.5: by the quadratic formula the
 	// eigenvalues are 1 + 0.25e-24 and 0.75e-24 to first order.

@@ -15,10 +15,13 @@ type made struct {
 	h      []complex128 // (p,q) the truth, the same on every line
 	mix    []complex128 // (q,q) forces are mix times unit white noise
 	noise  float64      // standard deviation of the responses' noise
+
+	forceNoise float64           // standard deviation of the noise that is measured with the forces
+	averaging  spectra.Averaging // its Pairs are kept
 }
 
 func (m made) snapshot(rng *rand.Rand) *spectra.Snapshot {
-	s := spectra.NewSnapshot(m.shape, spectra.Averaging{})
+	s := spectra.NewSnapshot(m.shape, m.averaging)
 	s.SpacingHz = 1
 	s.Averages, s.EffectiveAverages = m.blocks, float64(m.blocks)
 	q, p := m.shape.Forces, m.shape.Responses
@@ -39,6 +42,15 @@ func (m made) snapshot(rng *rand.Rand) *spectra.Snapshot {
 				for i := range q {
 					y[o] += m.h[o*q+i] * mixed[i]
 				}
+			}
+			if m.forceNoise > 0 {
+				draw(rng, x)
+				for i := range mixed {
+					mixed[i] += complex(m.forceNoise, 0) * x[i]
+				}
+			}
+			for n, pair := range m.averaging.Pairs {
+				s.GyyPairs[k*len(m.averaging.Pairs)+n] += y[pair[0]] * cmplx.Conj(y[pair[1]]) / complex(float64(m.blocks), 0)
 			}
 			for i := range q {
 				for j := range q {
@@ -90,11 +102,32 @@ func noPoints(q int) []DrivingPoint {
 	return points
 }
 
+// allPairs are the pairs of p responses that H2 needs.
+func allPairs(p int) [][2]int {
+	var pairs [][2]int
+	for n := range p {
+		for o := range n {
+			pairs = append(pairs, [2]int{o, n})
+		}
+	}
+	return pairs
+}
+
+// by is the estimates of s by the given estimator, whitened unless the noise densities are nil.
+func by(estimator string, s *spectra.Snapshot, noiseForce, noiseResponse []float64) *Estimates {
+	e := New(s.Shape, Method{
+		Points: noPoints(s.Forces), Estimator: estimator, Averaging: s.Averaging,
+		NoiseForce: noiseForce, NoiseResponse: noiseResponse,
+	})
+	e.Update(s)
+	return e
+}
+
 func estimatesOf(s *spectra.Snapshot, points []DrivingPoint) *Estimates {
 	if points == nil {
 		points = noPoints(s.Forces)
 	}
-	e := New(s.Shape, points)
+	e := New(s.Shape, Method{Points: points})
 	e.Update(s)
 	return e
 }

@@ -15,7 +15,7 @@ import (
 
 // flat makes estimates of 11 lines with |H| = 1 and the given random error everywhere.
 func flat(q, p, averages int, err float64) *Estimates {
-	e := New(spectra.Shape{Lines: 11, Forces: q, Responses: p}, noPoints(q))
+	e := New(spectra.Shape{Lines: 11, Forces: q, Responses: p}, Method{Points: noPoints(q)})
 	e.Averages, e.EffectiveAverages = averages, float64(averages)
 	fill(e.H, 1)
 	fill(e.RandomError, err)
@@ -31,7 +31,7 @@ func progressOf(e *Estimates, t Target) *Progress {
 }
 
 func verdictOf(e *Estimates, t Target, standing ...string) Verdict {
-	return Judge(e, progressOf(e, t), t, standing, func(n int) string { return fmt.Sprintf("frf%d", n) })
+	return Judge(e, progressOf(e, t), t, &Findings{Standing: standing}, func(n int) string { return fmt.Sprintf("frf%d", n) })
 }
 
 func TestVerdict(t *testing.T) {
@@ -174,5 +174,65 @@ func TestProgressAllocatesNothing(t *testing.T) {
 	p := progressOf(e, target)
 	if allocs := testing.AllocsPerRun(20, func() { p.Update(e, target) }); allocs != 0 {
 		t.Errorf("%v allocations an update, want none", allocs)
+	}
+}
+
+func TestSettlingOfRig(t *testing.T) {
+	r := &rig.Rig{Forces: make([]rig.Channel, 2)}
+	r.Analysis.Window, r.Grid.SpacingHz, r.Grid.Lines = "rectangular", 1, 20
+	for _, test := range []struct {
+		excitation string
+		want       int
+	}{{"random", 8}, {"burst", 8}, {"periodic", 6}} {
+		r.Analysis.Excitation = test.excitation
+		target := NewTarget(r)
+		if target.Settling != test.want {
+			t.Errorf("%s: %d averages, want %d", test.excitation, target.Settling, test.want)
+		}
+	}
+	target := tenLines
+	target.Settling = 6
+	for averages, want := range map[int]State{5: Settling, 6: Enough} {
+		if v := verdictOf(flat(2, 1, averages, 0.01), target); v.State != want {
+			t.Errorf("%d averages: %s, want %s", averages, v.State, want)
+		}
+	}
+}
+
+// TestReasonsTellWhatAveragingDoesNotMend goes through drift and leakage, in every state.
+func TestReasonsTellWhatAveragingDoesNotMend(t *testing.T) {
+	m := twoModes(1.5)
+	for _, test := range []struct {
+		name        string
+		shift       float64
+		randomError float64
+		blocks      int
+		state       State
+		reasons     []string // parts of them
+	}{
+		{"settling", 3, 0.05, 6, Settling, []string{"6 of the 8"}},
+		{"still averaging", 0, 0.01, 48, Averaging, []string{"random error", "only 1."}},
+		{"enough", 0, 0.5, 48, Enough, []string{"only 1."}},
+		{"enough of something that moved", 6, 0.5, 64, Enough, []string{"the first blocks and the later ones differ by", "lines wide"}},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			d, e := driftOf(m, 1, test.blocks, test.shift)
+			target := m.target()
+			target.RandomError = test.randomError
+			r := NewResonances(m.Shape, m.window, true)
+			r.Update(e, target)
+			name := func(n int) string { return fmt.Sprintf("frf%d", n) }
+			v := Judge(e, progressOf(e, target), target, &Findings{Drift: d, Resonances: r}, name)
+			ok := v.State == test.state && len(v.Reasons) == len(test.reasons)
+			for n, part := range test.reasons {
+				ok = ok && strings.Contains(v.Reasons[n], part)
+			}
+			if !ok {
+				t.Errorf("%s: %q", v.State, v.Reasons)
+			}
+			if v := Judge(e, progressOf(e, target), target, nil, name); v.Reasons == nil {
+				t.Error("reasons are nil")
+			}
+		})
 	}
 }

@@ -31,7 +31,7 @@ func powerFlows(c *check) []Finding {
 		return nil
 	}
 	points := drivingPoints(c)
-	e := estimate.New(estimate.ShapeOf(c.rig), points)
+	e := estimate.New(estimate.ShapeOf(c.rig), estimate.Method{Points: points})
 	e.Update(c.snapshot(Low))
 	var found []Finding
 	for i, point := range points {
