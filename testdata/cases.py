@@ -10,6 +10,8 @@ from typing import Callable, Optional
 
 import numpy as np
 
+import chance
+
 
 @dataclass
 class Case:
@@ -27,6 +29,7 @@ class Case:
     gaps: int = 0
     overranges: int = 0
     driving_points: Optional[list] = None  # checked where the case is about them
+    confidence: chance.Confidence = chance.Confidence()  # as asked for on the command line
 
 
 def rig(title, source, analysis, force, response):
@@ -258,6 +261,15 @@ def encodings():
                    blocks=8, encoding=encoding, file_channels=channels)
 
 
+def confidence_regions():
+    """Another confidence level than the usual one, for the three forces of a response at once."""
+    yield Case(
+        "simultaneous", "confidence regions at 95 %, for all forces of a response at once", 607,
+        rig("Simultaneous confidence regions", TEN_VOLTS, dict(**SMALL, min_frequency=11.0),
+            **three_by_two()) | {"target": {"depth_db": 12.0}},
+        blocks=17, confidence=chance.Confidence(0.95, True))
+
+
 def averaging_and_estimators():
     """Exponential averaging, H2 and Hv."""
     yield Case(
@@ -274,6 +286,27 @@ def averaging_and_estimators():
             [force(1, "S1", "1", "+z"), force(2, "S2", "2", "+z")],
             [response(3, "A1", "1", "+z"), response(4, "A2", "2", "+z"),
              response(5, "A3", "3", "+z")]), blocks=16)
+    yield Case(
+        "exponential_overlapped", "exponential averaging at 75 % overlap, with a gap", 604,
+        rig("Exponential averaging, much overlap", TEN_VOLTS,
+            dict(**SMALL, overlap=0.75, averaging="exponential", memory=9), **two_by_two()),
+        blocks=24, encoding="float32", edit=edit_exponential_overlapped,
+        aside=[9, 10, 11, 12], gaps=1)
+    yield Case(
+        "estimator_h2_three_forces", "H2, three forces that depend on each other", 605,
+        rig("Estimator H2, three forces", TEN_VOLTS, dict(**SMALL, estimator="h2"),
+            [force(i, f"S{i}", str(i), "+z") for i in (1, 2, 3)],
+            [response(4, "A1", "1", "+z"), response(5, "A2", "2", "-z"),
+             response(6, "A9", "9", "+x")]),
+        blocks=20, mix=[[1, 0.3, 0], [-0.4, 1, 0], [0.2, 0.2, 1]])
+    yield Case(
+        "estimator_hv_three_forces", "Hv, three forces, flat top", 606,
+        rig("Estimator Hv, three forces", TEN_VOLTS,
+            dict(**SMALL, estimator="hv", window="flattop"), **three_by_two()), blocks=20)
+
+
+def edit_exponential_overlapped(digital):
+    digital[1560:1580, 2] = np.nan  # hop 125: block 9 ends with frame 1624, block 12 begins at 1500
 
 
 def edit_exponential(digital):
@@ -283,5 +316,5 @@ def edit_exponential(digital):
 def every_case():
     """All cases in the order of README.md."""
     groups = (windows_and_blocks, channel_tables, gaps_and_overranges, few_blocks, encodings,
-              averaging_and_estimators)
+              averaging_and_estimators, confidence_regions)
     return [case for group in groups for case in group()]

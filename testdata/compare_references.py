@@ -3,8 +3,8 @@
 
     /usr/bin/python3 testdata/compare_references.py [FOLDER]
 
-FOLDER holds the stored cases, by default the one this script lies in. Recordings and rig files
-must be equal byte for byte. Arrays must agree to TOLERANCE of each array's greatest value, with
+FOLDER holds the stored cases, by default the one this script lies in. Recordings, rig files and
+true starts must be equal byte for byte. Arrays must agree to TOLERANCE of each array's greatest value, with
 NaN in the same places: builds of NumPy differ in the last bits. Prints one line for each
 difference; the exit status is 1 with any, else 0.
 """
@@ -19,6 +19,7 @@ sys.dont_write_bytecode = True
 import numpy as np
 
 import cases
+import found_cases
 import make_references
 
 TOLERANCE = 1e-12
@@ -62,11 +63,19 @@ def npz_differences(stored_path, made_path):
 
 def json_differences(stored_path, made_path):
     stored, made = json.loads(read_bytes(stored_path)), json.loads(read_bytes(made_path))
-    n_e, made_n_e = stored.pop("effective_averages", np.inf), made.pop("effective_averages")
-    if abs(n_e - made_n_e) > TOLERANCE * made_n_e:
-        yield f"effective_averages {n_e} is stored, {made_n_e} is made"
-    if stored != made:
-        yield "other facts"
+    if not alike(stored, made):
+        for key in sorted(stored.keys() | made.keys()):
+            if not alike(stored.get(key), made.get(key)):
+                yield f"{key} {stored.get(key)} is stored, {made.get(key)} is made"
+
+
+def alike(stored, made):
+    """Whether two values of JSON are the same, floating-point numbers to TOLERANCE."""
+    if isinstance(stored, float) and isinstance(made, float):
+        return abs(stored - made) <= TOLERANCE * abs(made)
+    if isinstance(stored, dict) and isinstance(made, dict):
+        return stored.keys() == made.keys() and all(alike(stored[k], made[k]) for k in made)
+    return type(stored) is type(made) and stored == made
 
 
 def byte_differences(stored_path, made_path):
@@ -79,23 +88,24 @@ def byte_differences(stored_path, made_path):
 
 COMPARE = {"rig.toml": byte_differences, "run.wav": byte_differences,
            "expected.npz": npz_differences, "expected.json": json_differences}
+COMPARE_FOUND = {"rig.toml": byte_differences, "run.wav": byte_differences,
+                 "truth.json": byte_differences}
 
 
-def differences(stored_parent, made_parent):
+def differences(stored_parent, made_parent, names, comparisons):
     """One line for everything that differs between two folders of cases."""
-    names = [case.name for case in cases.every_case()]
     for name in names:
         folder = os.path.join(stored_parent, name)
         present = set(os.listdir(folder)) if os.path.isdir(folder) else set()
-        for extra in sorted(present - COMPARE.keys()):
+        for extra in sorted(present - comparisons.keys()):
             yield f"{name}/{extra}: is stored, no script makes it"
-        for file, compare in COMPARE.items():
+        for file, compare in comparisons.items():
             if file not in present:
                 yield f"{name}/{file}: is not stored"
                 continue
             for text in compare(os.path.join(folder, file), os.path.join(made_parent, name, file)):
                 yield f"{name}/{file}: {text}"
-    for name in sorted(os.listdir(stored_parent)):
+    for name in sorted(os.listdir(stored_parent)) if os.path.isdir(stored_parent) else []:
         if os.path.isfile(os.path.join(stored_parent, name, "rig.toml")) and name not in names:
             yield f"{name}: is stored, no script makes it"
     described = read_bytes(os.path.join(make_references.HERE, "README.md")).decode("utf-8")
@@ -106,14 +116,18 @@ def differences(stored_parent, made_parent):
 
 def main():
     stored = sys.argv[1] if len(sys.argv) > 1 else make_references.HERE
+    names = [case.name for case in cases.every_case()]
+    found_names = [case.name for case in found_cases.every_found_case()]
     with tempfile.TemporaryDirectory() as made:
         make_references.make_all(made)
-        found = list(differences(stored, made))
-    for line in found:
+        lines = list(differences(stored, made, names, COMPARE))
+        lines += differences(os.path.join(stored, found_cases.FOLDER),
+                             os.path.join(made, found_cases.FOLDER), found_names, COMPARE_FOUND)
+    for line in lines:
         print(f"{line}: look at what changed, then run make_references.py", file=sys.stderr)
-    if not found:
-        print(f"{len(cases.every_case())} reference cases agree")
-    return 1 if found else 0
+    if not lines:
+        print(f"{len(names) + len(found_names)} reference cases agree")
+    return 1 if lines else 0
 
 
 if __name__ == "__main__":

@@ -1,8 +1,8 @@
 """Rig files: writing them, reading them back with every default filled in, and what they resolve to.
 
 Knows the TOML layout and the arithmetic of rate, block and hop. Knows no samples and no spectra.
-Only what the reference cases use is read: random excitation and no decimation. Whatever else a
-rig file holds stops the run.
+Only what the reference cases use is read, and that is without decimation. Whatever else a rig file
+holds stops the run.
 """
 
 import math
@@ -19,9 +19,12 @@ ALLOWED = {
     "source": {"kind", "device", "rate", "full_scale", "channels", "limit"},
     "analysis": {"max_frequency", "min_frequency", "line_spacing", "window", "overlap",
                  "excitation", "averaging", "memory", "estimator"},
+    "burst": {"period_s", "trigger_force", "trigger_level", "pre_trigger_s"},
+    "periodic": {"period", "settle_periods", "keep_periods"},
     "target": {"random_error", "share", "depth_db"},
     "watch": {"on_fault"},
 }
+TABLES = ("source", "analysis", "burst", "periodic", "target", "watch")
 CHANNEL_REQUIRED = {"channel", "name", "point", "axis", "sensitivity"}
 CHANNEL_ALLOWED = CHANNEL_REQUIRED | {"unit", "full_scale", "limit"}
 AXES = {sign + letter for sign in "+-" for letter in "xyz"}
@@ -61,13 +64,18 @@ class Channel:
 class Rig:
     rate_hz: float
     max_frequency_hz: float
+    min_frequency_hz: float
+    excitation: str
     window: str
     averaging: str
     memory: int          # 0 with linear averaging
     estimator: str
     decimation: int
     block: int
-    hop: int
+    hop: int             # 0 with burst and periodic excitation
+    burst: dict          # the table with its defaults; empty with another excitation
+    periodic: dict       # likewise
+    depth_db: float
     forces: list
     responses: list
 
@@ -80,6 +88,13 @@ class Rig:
     def lines(self):
         """From 0 Hz to the highest line that is not above max_frequency."""
         return math.floor(self.max_frequency_hz / self.spacing_hz() * (1 + SLACK)) + 1
+
+    def judged_lines(self):
+        """The lines that can be of interest: from min_frequency on, and beyond those into which
+        the window smears what stands at 0 Hz."""
+        smear = {"hann": 2, "flattop": 5, "rectangular": 1}[self.window]
+        bottom = math.ceil(self.min_frequency_hz / self.spacing_hz() * (1 - SLACK))
+        return range(max(bottom, smear + 1), self.lines())
 
     def driving_points(self):
         """Index of each force's driving-point response, the first in file order; None without."""
@@ -114,6 +129,33 @@ def resolve(rate_hz, max_frequency_hz, line_spacing_hz, overlap):
     return decimation, block, hop
 
 
+def resolve_periodic(rate_hz, max_frequency_hz, period):
+    """Decimation and block: a period is a block, so the decimation divides it."""
+    lowest = 2.56 * max_frequency_hz * (1 - SLACK)
+    decimation = max(d for d in range(1, 257) if period % d == 0 and rate_hz / d >= lowest)
+    return decimation, period // decimation
+
+
+def _burst(table, forces):
+    """The table [burst] with its defaults."""
+    assert ("period_s" in table) != ("trigger_force" in table), table
+    if "period_s" in table:
+        assert table.keys() == {"period_s"}, table
+        return dict(table)
+    result = {"trigger_level": 0.1, "pre_trigger_s": 0.0, **table}
+    assert result["trigger_force"] in {f.name for f in forces}, table
+    assert 0 < result["trigger_level"] < 1 and result["pre_trigger_s"] >= 0, table
+    return result
+
+
+def _periodic(table):
+    """The table [periodic] with its defaults."""
+    result = {"settle_periods": 8, "keep_periods": 2, **table}
+    assert result["period"] >= 1 and result["settle_periods"] >= 0, table
+    assert result["keep_periods"] >= 2, table
+    return result
+
+
 def _literal(value):
     if isinstance(value, str):
         assert '"' not in value and "\\" not in value, value
@@ -125,7 +167,7 @@ def to_toml(rig, heading):
     """The text of a rig file; heading is its comment, one line an item."""
     lines = ["# " + text for text in heading]
     lines += [f"title = {_literal(rig['title'])}"]
-    for table in ("source", "analysis", "target", "watch"):
+    for table in TABLES:
         if table in rig:
             lines += ["", f"[{table}]"]
             lines += [f"{key} = {_literal(value)}" for key, value in rig[table].items()]
@@ -160,20 +202,27 @@ def read(path):
         assert tables.get(name, {}).keys() <= allowed, tables[name]
     source, analysis = tables["source"], tables["analysis"]
     assert tables.get("watch", {}).get("on_fault", "hold") in ("hold", "carry-on")
-    assert analysis.get("excitation", "random") == "random"
 
-    window = analysis.get("window", "hann")
+    excitation = analysis.get("excitation", "random")
+    assert excitation in ("random", "burst", "periodic")
+    bounded = excitation != "random"
+    for table in ("burst", "periodic"):
+        assert (table in tables) == (table == excitation), table
+    window = analysis.get("window", "rectangular" if bounded else "hann")
     averaging = analysis.get("averaging", "linear")
     estimator = analysis.get("estimator", "h1")
-    overlap = float(analysis.get("overlap", 0.5))
+    overlap = float(analysis.get("overlap", 0.0 if bounded else 0.5))
     assert window in ("hann", "rectangular", "flattop")
     assert averaging in ("linear", "exponential")
     assert ("memory" in analysis) == (averaging == "exponential")
     assert analysis.get("memory", 2) >= 2
     assert estimator in ("h1", "h2", "hv")
     assert 0 <= overlap < 1
+    assert not bounded or (window, overlap) == ("rectangular", 0)
+    assert excitation != "periodic" or estimator == "h1"
     max_frequency = float(analysis["max_frequency"])
-    assert 0 <= analysis.get("min_frequency", 0.0) < max_frequency
+    min_frequency = float(analysis.get("min_frequency", 0.0))
+    assert 0 <= min_frequency < max_frequency
     rate = float(source["rate"])
 
     forces = [_channel(t, source, "N", {"N"}) for t in tables["force"]]
@@ -186,7 +235,18 @@ def read(path):
     assert source.get("channels", highest) >= highest, "a channel beyond the source's"
     assert estimator != "h2" or len(forces) == len(responses)
 
-    decimation, block, hop = resolve(rate, max_frequency, float(analysis["line_spacing"]), overlap)
+    burst = _burst(tables["burst"], forces) if excitation == "burst" else {}
+    periodic = _periodic(tables["periodic"]) if excitation == "periodic" else {}
+    if periodic:
+        decimation, block = resolve_periodic(rate, max_frequency, periodic["period"])
+    else:
+        decimation, block, hop = resolve(rate, max_frequency, float(analysis["line_spacing"]),
+                                         overlap)
     assert decimation == 1, "the references hold for recordings that are not decimated"
-    return Rig(rate, max_frequency, window, averaging, analysis.get("memory", 0), estimator,
-               decimation, block, hop, forces, responses)
+    assert not burst or block <= burst.get("period_s", math.inf) * rate / decimation
+    return Rig(rate_hz=rate, max_frequency_hz=max_frequency, min_frequency_hz=min_frequency,
+               excitation=excitation, window=window, averaging=averaging,
+               memory=analysis.get("memory", 0), estimator=estimator, decimation=decimation,
+               block=block, hop=0 if bounded else hop, burst=burst, periodic=periodic,
+               depth_db=float(tables.get("target", {}).get("depth_db", 20.0)), forces=forces,
+               responses=responses)

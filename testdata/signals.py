@@ -39,24 +39,27 @@ def forces_n(random, frames, q, mix):
     return shaped * FORCE_RMS_N * np.asarray(FORCE_LEVELS[:q])
 
 
-def accelerations(random, rig, forces):
-    """Accelerations in m/s² in the direction of each transducer, shape (frames, p)."""
+def accelerations(random, rig, forces, modes=MODES, noise=RESPONSE_NOISE):
+    """Accelerations in m/s² in the direction of each transducer, shape (frames, p).
+
+    modes are given like MODES, noise in m/s².
+    """
     places = list(dict.fromkeys(c.place() for c in rig.channels()))
-    shapes = random.uniform(0.4, 1.0, (len(places), 1 + len(MODES)))
-    shapes[:, 1:] *= random.choice([-1.0, 1.0], (len(places), len(MODES)))
+    shapes = random.uniform(0.4, 1.0, (len(places), 1 + len(modes)))
+    shapes[:, 1:] *= random.choice([-1.0, 1.0], (len(places), len(modes)))
     row = {place: shapes[i] for i, place in enumerate(places)}
     force_shapes = np.stack([c.sign() * row[c.place()] for c in rig.forces])
     response_shapes = np.stack([c.sign() * row[c.place()] for c in rig.responses])
 
     total = RIGID * forces @ np.outer(force_shapes[:, 0], response_shapes[:, 0])
-    for mode, (share, damping) in enumerate(MODES, start=1):
+    for mode, (share, damping) in enumerate(modes, start=1):
         angle = 2 * np.pi * share * rig.max_frequency_hz / rig.rate_hz
         radius = np.exp(-damping * angle)
         a = [1.0, -2 * radius * np.cos(angle), radius ** 2]
         modal = lfilter([1.0, -2.0, 1.0], a, forces @ force_shapes[:, mode])
         total += np.outer(modal, response_shapes[:, mode])
     total *= RESPONSE_RMS / np.sqrt(np.mean(total ** 2))
-    return total + RESPONSE_NOISE * random.standard_normal(total.shape)
+    return total + noise * random.standard_normal(total.shape)
 
 
 def digital(rig, seed, frames, file_channels, mix=None):
@@ -64,7 +67,12 @@ def digital(rig, seed, frames, file_channels, mix=None):
     random = np.random.RandomState(seed)
     forces = forces_n(random, frames, len(rig.forces), mix)
     responses = accelerations(random, rig, forces)
-    result = UNUSED_RMS * random.standard_normal((frames, file_channels))
+    return recorded(random, rig, forces[SETTLE:], responses[SETTLE:], file_channels)
+
+
+def recorded(random, rig, forces, responses, file_channels):
+    """Digital samples of N and m/s² on their channels; the unused ones carry noise."""
+    result = UNUSED_RMS * random.standard_normal((len(forces), file_channels))
     for channel, column in zip(rig.channels(), np.hstack([forces, responses]).T):
-        result[:, channel.index] = channel.digital(column[SETTLE:])
+        result[:, channel.index] = channel.digital(column)
     return result
