@@ -11,6 +11,7 @@ type layout struct {
 	structure *structure
 	shakers   []attached // q, in rig order
 	sensors   []dof      // p, in rig order
+	floors    []floor    // of the noise of each channel, forces first
 }
 
 // newLayout finds the channels of r on s. The error is a rig.Mistakes with each channel that does
@@ -39,11 +40,13 @@ func newLayout(r *rig.Rig, s *structure) (layout, error) {
 		} else if ok {
 			taken[at] = c.Name
 		}
-		l.shakers = append(l.shakers, attached{defaultShaker, at})
+		l.shakers = append(l.shakers, attached{shaker: defaultShaker, at: at})
+		l.floors = append(l.floors, forceFloor)
 	}
 	for _, c := range r.Responses {
 		at, _ := find(c, "response")
 		l.sensors = append(l.sensors, at)
+		l.floors = append(l.floors, responseFloor)
 	}
 	if mistakes != nil {
 		return layout{}, mistakes

@@ -28,7 +28,15 @@ func newSensor(c rig.Channel, rateHz float64, f floor, seed uint64) sensor {
 
 // digital returns what the chain makes of a force or acceleration along the positive axis: a
 // fraction of full scale that float32 holds exactly, because recordings are float32.
-func (s *sensor) digital(value float64) float64 {
-	fraction := (s.sign*value + s.sensorNoise.next()) * s.perUnit
+func (s *sensor) digital(value float64) float64 { return s.amplified(value, 1) }
+
+// amplified is digital with a gain too many, 1 for none.
+func (s *sensor) amplified(value, gain float64) float64 {
+	fraction := (s.sign*value + s.sensorNoise.next()) * gain * s.perUnit
+	return s.clipped(fraction)
+}
+
+// clipped is a fraction of full scale as a recording holds it.
+func (s *sensor) clipped(fraction float64) float64 {
 	return float64(float32(max(s.low, min(s.high, fraction))))
 }

@@ -91,7 +91,7 @@ var skidModes = []struct {
 
 // newSkid returns the frame.
 func newSkid() *structure {
-	s := new(structure)
+	s := &structure{topHz: 1000}
 	for _, p := range skidPoints {
 		s.points = append(s.points, p.name)
 	}

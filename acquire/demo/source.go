@@ -5,104 +5,112 @@ import (
 	"hash/fnv"
 	"math"
 	"math/rand/v2"
+	"sync"
 	"sync/atomic"
 
 	"gonum.org/v1/gonum/floats"
 
+	"shakerwatch/acquire"
 	"shakerwatch/acquire/rig"
 )
 
 // A Source delivers the frames of a rig on the simulated structure, without end and as fast as they
-// are read. It never returns an error. It serves one goroutine at a time, but for SetDrive.
+// are read. It returns no error but an *acquire.GapError, and that only where a fault loses frames. It serves one
+// goroutine at a time, but for SetDrive, SetFaults, SetSpring and Frames.
 //
-// Equal rigs and seeds give equal bits on one processor architecture, however the frames are read.
+// Equal rigs, seeds and faults give equal bits on one processor architecture, however the frames are read.
 type Source struct {
 	rateHz   float64
+	topHz    float64
 	channels int
-	plant    *stepper
+	names    []string // of the outputs
+	seed     uint64
+	layout   layout
+	sub      int // steps of the plant a frame
 	drives   []drive
-	sensors  []sensor      // of the plant's outputs
+	sensors  []sensor      // of the outputs
 	outputs  []float64     // N and m/s² along positive axes, one frame
 	level    atomic.Uint64 // bits of the share of the drives that reaches the shakers
+
+	mu     sync.Mutex // guards what follows; Read holds it
+	now    int64      // the next frame; 0 is the first that is read
+	sound  plant      // with nothing broken
+	spring *fitted
+	faults []*broken
+	turns  []turn // still to come
+	set    *setting
+	past   history
 }
 
-const (
-	// passRatio and stopRatio bound the edge of the drives, per max_frequency. The stop lies at half
-	// the lowest rate that a rig may have, so nothing aliases.
-	passRatio = 1.0
-	stopRatio = 1.28
+// fineRatio is how many sub samples a period of the highest frequency has at least, be it one of
+// the band or of a mode. The current between two sub samples is a straight line, which puts weak
+// images of the band around the rate of the sub samples. At 72 what they leave is below 1e-4 of H
+// even in antiresonances 100 dB deep; a test measures it.
+const fineRatio = 72
 
-	// fineRatio is how many sub samples a period of the highest frequency has at least, and
-	// structureTopHz the highest frequency at which the structure has modes. The current between two
-	// sub samples is a straight line, which puts weak images of the band around the rate of the sub
-	// samples. At 72 what they leave is below 1e-4 of H even in antiresonances 100 dB deep; a test measures it.
-	fineRatio      = 72
-	structureTopHz = 1000
-
-	// runInS is how long the shakers have been running when the first frame is read: over seven time
-	// constants of the slowest flexible mode.
-	runInS = 1.0
-)
-
-// New returns a source for r, which is of kind demo with random excitation, with the noise of the
-// drives and sensors drawn from seed. A shaker stands at each force, all alike, driven
-// independently. Channels of the stream that r does not use are 0.
+// New returns a source for r, which is of kind demo, with the noise of the drives and sensors drawn
+// from seed. A shaker stands at each force, all alike, driven independently with the excitation of r.
+// Channels of the stream that r does not use are 0.
+//
+// The first frame comes from shakers that have been running. With burst excitation it is the first
+// of a burst where r gives a period, and in the silence before one where it gives a trigger. With
+// periodic excitation it is the first of a period, two periods before the first change.
 //
 // The error is a rig.Mistakes where channels do not fit the structure.
 func New(r *rig.Rig, seed uint64) (*Source, error) {
 	if r.Source.Kind != "demo" {
 		return nil, fmt.Errorf("%s: source kind %q is not simulated: choose demo", r.Path, r.Source.Kind)
 	}
-	if r.Analysis.Excitation != "random" {
-		return nil, fmt.Errorf("%s: excitation %q is not simulated: choose random", r.Path, r.Analysis.Excitation)
-	}
 	l, err := newLayout(r, newSkid())
 	if err != nil {
 		return nil, err
 	}
-	s := newSource(r, l, seed)
+	return start(r, l, seed)
+}
+
+// start returns the source of a layout of r, run in.
+func start(r *rig.Rig, l layout, seed uint64) (*Source, error) {
+	s, runIn, err := newSource(r, l, seed)
+	if err != nil {
+		return nil, err
+	}
 	frame := make([]float64, s.channels)
-	for range int(runInS * s.rateHz) {
+	for range runIn {
 		s.frame(frame)
 	}
+	s.now = 0
 	return s, nil
 }
 
-func newSource(r *rig.Rig, l layout, seed uint64) *Source {
-	rateHz, topHz := r.Source.RateHz, r.Analysis.MaxFrequencyHz
-	sub := subSamples(rateHz, topHz)
-	s := &Source{
+// newSource returns a source at rest, and after how many frames it has run in.
+func newSource(r *rig.Rig, l layout, seed uint64) (s *Source, runIn int, err error) {
+	rateHz := r.Source.RateHz
+	sub := subSamples(rateHz, max(r.Analysis.MaxFrequencyHz, l.structure.topHz))
+	s = &Source{
 		rateHz:   rateHz,
+		topHz:    r.Analysis.MaxFrequencyHz,
 		channels: r.Source.Channels,
-		plant:    newStepper(couple(l.structure, l.shakers, l.sensors), 1/(rateHz*float64(sub)), sub),
+		names:    channelNames(r),
+		seed:     seed,
+		layout:   l,
+		sub:      sub,
 		outputs:  make([]float64, len(r.Forces)+len(r.Responses)),
 	}
+	s.past = newHistory(len(s.outputs))
+	s.sound = new(condition).build(l, rateHz, sub)
+	s.set = &setting{plant: s.sound}
 	s.SetDrive(1)
-	for i, c := range r.Forces {
-		b := driveBand(rateHz, topHz, l.shakers[i].currentRMSA)
-		s.drives = append(s.drives, newNoiseDrive(b, stream(seed, "drive "+c.Name)))
-		s.sensors = append(s.sensors, newSensor(c, rateHz, forceFloor, seed))
+	if s.drives, runIn, err = newDrives(r, l.shakers, sub, seed); err != nil {
+		return nil, 0, err
 	}
-	for _, c := range r.Responses {
-		s.sensors = append(s.sensors, newSensor(c, rateHz, responseFloor, seed))
+	for i, c := range r.Channels() {
+		s.sensors = append(s.sensors, newSensor(c, rateHz, l.floors[i], seed))
 	}
-	return s
+	return s, runIn, nil
 }
 
-// subSamples is the number of steps from one frame to the next.
-func subSamples(rateHz, topHz float64) int {
-	return int(math.Ceil(fineRatio * max(topHz, structureTopHz) / rateHz))
-}
-
-// driveBand is the band of drives for frames at rateHz and max_frequency topHz. The white samples lie
-// as many whole frames apart as the stop allows, so the cost does not grow with the rate.
-func driveBand(rateHz, topHz, rms float64) band {
-	sub := subSamples(rateHz, topHz)
-	stopHz := stopRatio * topHz
-	// 1e-9: a rate of exactly twice the stop may compute to a little less
-	frames := max(1, int(rateHz/(2*stopHz)+1e-9))
-	return band{rateHz: rateHz * float64(sub), every: sub * frames, passHz: passRatio * topHz, stopHz: stopHz, rms: rms}
-}
+// subSamples is the number of steps from one frame to the next for frequencies up to topHz.
+func subSamples(rateHz, topHz float64) int { return int(math.Ceil(fineRatio * topHz / rateHz)) }
 
 // stream returns random numbers that depend on the seed and the label only, so that a channel's
 // noise does not depend on its place in the rig file.
@@ -122,28 +130,74 @@ func (s *Source) RateHz() float64 { return s.rateHz }
 // Channels is the number of samples in a frame.
 func (s *Source) Channels() int { return s.channels }
 
-// Read fills the whole of dst and never ends.
+// Read fills the whole of dst and never ends. Where a fault loses frames it returns an *acquire.GapError.
 func (s *Source) Read(dst []float64) (n int, err error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
 	n = len(dst) / s.channels
 	for i := range n {
-		s.frame(dst[i*s.channels : (i+1)*s.channels])
+		frame := dst[i*s.channels : (i+1)*s.channels]
+		if s.turn(); s.set.lost {
+			if i > 0 {
+				return i, nil
+			}
+			return 0, &acquire.GapError{Frames: s.lose(frame)}
+		}
+		s.frame(frame)
 	}
 	return n, nil
 }
 
+// lose runs through the frames that are lost here and returns how many. It overwrites scratch, a frame.
+func (s *Source) lose(scratch []float64) (frames int64) {
+	for s.set.lost {
+		s.frame(scratch)
+		frames++
+		s.turn()
+	}
+	return frames
+}
+
 // frame puts the next frame into dst.
 func (s *Source) frame(dst []float64) {
-	level := math.Float64frombits(s.level.Load())
-	for i, d := range s.drives {
-		currents := s.plant.input(i)
-		d.next(currents)
-		if level != 1 {
-			floats.Scale(level, currents)
-		}
-	}
-	s.plant.step(s.outputs)
+	s.drive()
+	s.set.plant.step(s.outputs)
+	s.past.add(s.outputs)
 	clear(dst)
 	for i := range s.sensors {
-		dst[s.sensors[i].channel] = s.sensors[i].digital(s.outputs[i])
+		sensor := &s.sensors[i]
+		if s.set.chains == nil {
+			dst[sensor.channel] = sensor.digital(s.outputs[i])
+			continue
+		}
+		c := &s.set.chains[i]
+		dst[sensor.channel] = c.digital(sensor, s.past.at(i, c.late))
+	}
+	for _, pair := range s.set.twins {
+		dst[s.sensors[pair[0]].channel] = dst[s.sensors[pair[1]].channel]
+	}
+	s.now++
+}
+
+// drive puts the next frame's sub samples into the plant's inputs.
+func (s *Source) drive() {
+	level := math.Float64frombits(s.level.Load())
+	for i, d := range s.drives {
+		d.next(s.set.plant.input(i))
+	}
+	for _, t := range s.set.ties {
+		t.mix(s.set.plant.input(t.leader), s.set.plant.input(t.follower))
+	}
+	for i := range s.drives {
+		gain := level
+		if s.set.drives != nil {
+			gain *= s.set.drives[i]
+		}
+		if gain != 1 {
+			floats.Scale(gain, s.set.plant.input(i))
+		}
+	}
+	for k, b := range s.set.knocks {
+		strike(s.set.plant.input(len(s.drives)+k), b.orUsual(), s.now-b.from, s.rateHz)
 	}
 }

@@ -6,8 +6,6 @@ import (
 	"slices"
 	"testing"
 
-	"pgregory.net/rapid"
-
 	"shakerwatch/acquire"
 	"shakerwatch/acquire/internal/sourcetest"
 	"shakerwatch/acquire/rig"
@@ -79,32 +77,14 @@ func TestSourceSeeds(t *testing.T) {
 // The first frame comes from shakers that have run for a second.
 func TestSourceHasRunIn(t *testing.T) {
 	r, l := demoLayout(t)
-	cold := newSource(r, l, 4)
+	cold, _, err := newSource(r, l, 4)
+	if err != nil {
+		t.Fatal(err)
+	}
 	read(t, cold, 2560)
 	if !slices.Equal(read(t, cold, 100), read(t, newDemo(t, r, 4), 100)) {
 		t.Error("a second after a cold start other samples than at the first frame")
 	}
-}
-
-func TestDriveBand(t *testing.T) {
-	rapid.Check(t, func(t *rapid.T) {
-		topHz := rapid.Float64Range(10, 20e3).Draw(t, "topHz")
-		rateHz := topHz * rapid.Float64Range(2.56, 200).Draw(t, "rateHz per topHz")
-		b := driveBand(rateHz, topHz, 1)
-		whiteHz := b.rateHz / float64(b.every)
-		switch {
-		case b.passHz < topHz:
-			t.Fatalf("flat to %g Hz: want %g", b.passHz, topHz)
-		case b.stopHz > rateHz/2*(1+1e-9):
-			t.Fatalf("gone from %g Hz at %g frames/s: aliases", b.stopHz, rateHz)
-		case whiteHz < 2*b.stopHz*(1-1e-9):
-			t.Fatalf("white samples at %g Hz: want at least twice the stop at %g Hz", whiteHz, b.stopHz)
-		case whiteHz > 4*b.stopHz*(1+1e-9):
-			t.Fatalf("white samples at %g Hz: want at most four times the stop at %g Hz", whiteHz, b.stopHz)
-		case b.rateHz < fineRatio*topHz*(1-1e-9):
-			t.Fatalf("sub samples at %g Hz: want at least %d times %g Hz", b.rateHz, fineRatio, topHz)
-		}
-	})
 }
 
 // A load cell whose noise repeated its shaker's drive would seem to measure something of the drive.
@@ -118,7 +98,10 @@ func TestStreamsAreApart(t *testing.T) {
 		seen[first] = name
 	}
 	_, l := demoLayout(t)
-	s := newSource(r, l, 1)
+	s, _, err := newSource(r, l, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
 	for i, c := range append(r.Forces, r.Responses...) {
 		note("the noise of "+c.Name, s.sensors[i].rng.Uint64())
 	}
@@ -143,8 +126,8 @@ func TestSourceRefusesWhatItDoesNotSimulate(t *testing.T) {
 	}{
 		{"sound card", func(r *rig.Rig) { r.Source.Kind = "soundcard" },
 			`skid.toml: source kind "soundcard" is not simulated: choose demo`},
-		{"burst", func(r *rig.Rig) { r.Analysis.Excitation = "burst" },
-			`skid.toml: excitation "burst" is not simulated: choose random`},
+		{"sine", func(r *rig.Rig) { r.Analysis.Excitation = "sine" },
+			`skid.toml: excitation "sine" is not simulated: choose random, burst or periodic`},
 	} {
 		r := Rig()
 		c.change(r)

@@ -16,55 +16,38 @@ type stepper struct {
 
 	advance blas64.General // states × (states + inputs (sub+1))
 	observe blas64.General // outputs × (states + inputs)
+	late    []lateOutput
 
 	from []float64 // the states, then for each input its last sample and the frame's sub new ones
 	to   []float64 // the states after the frame, then each input's newest sample
 }
 
-// newStepper returns a stepper with sub steps of stepS a frame.
-func newStepper(sys stateSpace, stepS float64, sub int) *stepper {
-	n, q := sys.b.Dims()
-	outputs, _ := sys.c.Dims()
-	phi, old, fresh := sys.triangleHold(stepS)
-
-	advance := mat.NewDense(n, n+q*(sub+1), nil)
-	// after is what the rest of the frame makes of the states at the end of sub step k
-	after := mat.NewDense(n, n, nil)
-	for i := range n {
-		after.Set(i, i, 1)
-	}
-	var product mat.Dense
-	for k := sub - 1; k >= 0; k-- {
-		product.Mul(after, old)
-		addInputs(advance, &product, n+k, sub+1)
-		product.Reset()
-		product.Mul(after, fresh)
-		addInputs(advance, &product, n+k+1, sub+1)
-		product.Reset()
-		product.Mul(after, phi)
-		after.Copy(&product)
-		product.Reset()
-	}
-	advance.Slice(0, n, 0, n).(*mat.Dense).Copy(after)
-	observe := mat.NewDense(outputs, n+q, nil)
-	observe.Augment(sys.c, sys.d)
-
-	return &stepper{
-		states: n, inputs: q, sub: sub,
-		advance: advance.RawMatrix(), observe: observe.RawMatrix(),
-		from: make([]float64, n+q*(sub+1)), to: make([]float64, n+q),
-	}
+// A lateOutput is one that is taken some sub steps before a frame's end, so that it seems late.
+type lateOutput struct {
+	output  int
+	weights []float64 // of what a stepper's from holds before the frame
+	value   float64
 }
 
-// addInputs adds the columns of m to every stride-th column of dst from first on.
-func addInputs(dst, m *mat.Dense, first, stride int) {
-	n, q := m.Dims()
-	for i := range q {
-		for r := range n {
-			column := first + i*stride
-			dst.Set(r, column, dst.At(r, column)+m.At(r, i))
+// newStepper returns a stepper with sub steps of stepS a frame. An output is taken early sub steps, 0 to sub-1,
+// before the end of the frame; without early, none is.
+func newStepper(sys stateSpace, stepS float64, sub int, early ...int) *stepper {
+	n, q := sys.b.Dims()
+	outputs, _ := sys.c.Dims()
+	f := newFolder(sys, stepS, sub)
+	observe := mat.NewDense(outputs, n+q, nil)
+	observe.Augment(sys.c, sys.d)
+	s := &stepper{
+		states: n, inputs: q, sub: sub,
+		advance: f.fold(sub).RawMatrix(), observe: observe.RawMatrix(),
+		from: make([]float64, n+q*(sub+1)), to: make([]float64, n+q),
+	}
+	for o, steps := range early {
+		if steps > 0 {
+			s.late = append(s.late, lateOutput{output: o, weights: f.outputAt(sys, o, sub-steps)})
 		}
 	}
+	return s
 }
 
 // input is the place for the next frame's sub samples of input i. It is valid until step.
@@ -75,6 +58,18 @@ func (s *stepper) input(i int) []float64 {
 
 // step advances by a frame and puts the outputs at its end into dst.
 func (s *stepper) step(dst []float64) {
+	for i := range s.late {
+		s.late[i].value = blas64.Dot(vector(s.late[i].weights), vector(s.from))
+	}
+	s.move()
+	s.outputs(dst)
+	for i := range s.late {
+		dst[s.late[i].output] = s.late[i].value
+	}
+}
+
+// move advances the states by a frame.
+func (s *stepper) move() {
 	multiply(s.to[:s.states], s.advance, s.from)
 	copy(s.from, s.to[:s.states])
 	for i := range s.inputs {
@@ -82,11 +77,18 @@ func (s *stepper) step(dst []float64) {
 		s.from[first] = s.from[first+s.sub]
 		s.to[s.states+i] = s.from[first]
 	}
-	multiply(dst, s.observe, s.to)
 }
+
+// outputs puts the outputs for the present states and inputs into dst.
+func (s *stepper) outputs(dst []float64) { multiply(dst, s.observe, s.to) }
+
+func (s *stepper) state() []float64 { return s.from[:s.states] }
+
+func (s *stepper) held(i int) *float64 { return &s.from[s.states+i*(s.sub+1)] }
 
 // multiply puts m x into dst.
 func multiply(dst []float64, m blas64.General, x []float64) {
-	blas64.Gemv(blas.NoTrans, 1, m, blas64.Vector{N: len(x), Data: x, Inc: 1},
-		0, blas64.Vector{N: len(dst), Data: dst, Inc: 1})
+	blas64.Gemv(blas.NoTrans, 1, m, vector(x), 0, vector(dst))
 }
+
+func vector(x []float64) blas64.Vector { return blas64.Vector{N: len(x), Data: x, Inc: 1} }

@@ -9,6 +9,7 @@ import "math"
 type structure struct {
 	points []string // names
 	modes  []mode
+	topHz  float64 // above which there are no modes
 }
 
 // A mode is normalised to unit modal mass.

@@ -2,7 +2,7 @@ package demo
 
 import "shakerwatch/acquire/rig"
 
-// A Truth is what a perfect measurement of a rig on the simulated structure would find. It is
+// A Truth is what a perfect measurement of a sound rig on the simulated structure would find. It is
 // read-only, so any number of goroutines may use it.
 type Truth struct {
 	layout

@@ -2,48 +2,13 @@ package demo
 
 import (
 	"math"
-	"math/cmplx"
 	"slices"
 	"testing"
 )
 
-func demoBand() band {
-	return band{rateHz: 2560 * 8, every: 8, passHz: 1000, stopHz: 1280, rms: 1.5}
-}
-
-// gainDB is a filter's gain at a frequency against the one at 0 Hz.
-func gainDB(taps []float64, freqHz, rateHz float64) float64 {
-	var at complex128
-	var sum float64
-	for i, v := range taps {
-		sum += v
-		at += complex(v, 0) * cmplx.Exp(complex(0, -2*math.Pi*freqHz*float64(i)/rateHz))
-	}
-	return 20 * math.Log10(cmplx.Abs(at)/math.Abs(sum))
-}
-
-func TestLowPass(t *testing.T) {
-	for name, b := range map[string]band{
-		"at the lowest rate":   demoBand(),
-		"far above the lowest": {rateHz: 51200 * 2, every: 40, passHz: 1000, stopHz: 1280, rms: 1.5},
-		"no sub samples":       {rateHz: 3000, every: 1, passHz: 1000, stopHz: 1280, rms: 1.5},
-	} {
-		taps := lowPass(b)
-		for freqHz := 0.0; freqHz <= b.rateHz/2; freqHz += 20 {
-			gain := gainDB(taps, freqHz, b.rateHz)
-			if freqHz <= b.passHz && math.Abs(gain) > 0.001 {
-				t.Errorf("%s: %.4f dB at %g Hz: want 0 up to %g Hz", name, gain, freqHz, b.passHz)
-			}
-			if freqHz >= b.stopHz && gain > -92 {
-				t.Errorf("%s: %.1f dB at %g Hz: want at most -92 from %g Hz", name, gain, freqHz, b.stopHz)
-			}
-		}
-	}
-}
-
-func TestNoiseDriveLevelAndDistribution(t *testing.T) {
+func TestRandomDriveLevelAndDistribution(t *testing.T) {
 	b := demoBand()
-	d := newNoiseDrive(b, stream(1, "test"))
+	d := newRandomDrive(b, stream(1, "test"))
 	v := make([]float64, 400_000)
 	d.next(v)
 	var power, fourth float64
@@ -64,9 +29,9 @@ func TestNoiseDriveLevelAndDistribution(t *testing.T) {
 }
 
 // The images of the white noise around multiples of its rate must be gone, else they alias.
-func TestNoiseDriveHasNothingAboveItsStop(t *testing.T) {
+func TestRandomDriveHasNothingAboveItsStop(t *testing.T) {
 	b := demoBand()
-	d := newNoiseDrive(b, stream(2, "test"))
+	d := newRandomDrive(b, stream(2, "test"))
 	v := make([]float64, 8*8192)
 	d.next(v)
 	x := transform(v, 0, 1)
@@ -87,10 +52,10 @@ func TestNoiseDriveHasNothingAboveItsStop(t *testing.T) {
 	}
 }
 
-func TestNoiseDriveDoesNotDependOnCalls(t *testing.T) {
+func TestRandomDriveDoesNotDependOnCalls(t *testing.T) {
 	whole, parts := make([]float64, 1000), make([]float64, 1000)
-	newNoiseDrive(demoBand(), stream(3, "test")).next(whole)
-	d := newNoiseDrive(demoBand(), stream(3, "test"))
+	newRandomDrive(demoBand(), stream(3, "test")).next(whole)
+	d := newRandomDrive(demoBand(), stream(3, "test"))
 	for at, n := 0, 1; at < len(parts); at, n = at+n, n+1 {
 		n = min(n, len(parts)-at)
 		d.next(parts[at : at+n])
