@@ -2,7 +2,6 @@ package main
 
 import (
 	"context"
-	"fmt"
 
 	"shakerwatch/acquire/rig"
 )
@@ -13,26 +12,5 @@ func (a *app) check(_ context.Context, args []string) error {
 	if err != nil {
 		return unusable(err)
 	}
-	if err := r.WriteTable(a.stdout); err != nil {
-		return err
-	}
-	if err := computable(r); err != nil {
-		fmt.Fprintf(a.stdout, "warning: %v\n", err)
-	}
-	return nil
-}
-
-// computable refuses what a rig file may ask for and this version does not compute.
-func computable(r *rig.Rig) error {
-	s := r.Analysis
-	for _, setting := range []struct{ key, value, computed string }{
-		{"excitation", s.Excitation, "random"},
-		{"averaging", s.Averaging, "linear"},
-		{"estimator", s.Estimator, "h1"},
-	} {
-		if setting.value != setting.computed {
-			return fmt.Errorf("%s: %s = %q is not computed by this version: choose %q", r.Path, setting.key, setting.value, setting.computed)
-		}
-	}
-	return nil
+	return r.WriteTable(a.stdout)
 }

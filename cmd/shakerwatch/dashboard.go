@@ -25,7 +25,7 @@ func (a *app) openDashboard(m measurement) (*dashboard, error) {
 	if err := loopback(a.listen); err != nil {
 		return nil, err
 	}
-	hub := web.NewHub(m.rig, m.kind, a.out != "")
+	hub := web.NewHub(web.Run{Rig: m.rig, Kind: m.kind, Saves: a.out != "", Level: a.confidence})
 	server := web.NewServer(hub, a.logger())
 	listener, err := net.Listen("tcp", a.listen)
 	if err != nil {

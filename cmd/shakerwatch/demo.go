@@ -18,7 +18,7 @@ const demoSeed = 1
 
 // demo runs the simulated rig that is built in.
 func (a *app) demo(ctx context.Context, _ []string) error {
-	in, err := simulated(demo.Rig())
+	in, err := simulated(demo.RigFor(a.excitation))
 	if err != nil {
 		return unusable(err)
 	}

@@ -53,9 +53,6 @@ func (a *app) openInput(ctx context.Context, r *rig.Rig) (*input, error) {
 	if err := a.kindFlags(r.Source.Kind); err != nil {
 		return nil, err
 	}
-	if err := computable(r); err != nil {
-		return nil, err
-	}
 	switch r.Source.Kind {
 	case "demo":
 		return simulated(r)

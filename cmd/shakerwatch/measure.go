@@ -22,6 +22,7 @@ type measurement struct {
 	frames int64 // in the recording; 0 when nobody knows
 	only   []int64
 
+	replayed  string // path of the recording that is replayed, empty otherwise
 	interrupt func() // ends a Read that waits for ever; nil where none does
 
 	record    func() (*record.Recorder, error) // nil when nothing is to be recorded
@@ -55,6 +56,9 @@ func (a *app) measure(ctx context.Context, m measurement) (err error) {
 	}
 	result, runErr := a.monitor(ctx, m, board, recorder, noise)
 	a.closeRecorder(m, recorder)
+	if m.replayed != "" && result.Averaged == 0 && result.Trouble != "" {
+		return unusablef("%s: no block was found: %s", m.replayed, result.Trouble)
+	}
 	saved, err := a.save(folder, m, noise, result)
 	if err != nil {
 		return err
@@ -81,13 +85,17 @@ func (a *app) monitor(ctx context.Context, m measurement, board *dashboard, reco
 	progress := newProgress(a.stderr, m, a.blocks)
 	defer progress.close()
 	c := monitor.Config{
-		Rig:        m.rig,
-		Source:     tee(m.pace, recorder)(ctx, m.stream),
-		Live:       m.live,
-		Interrupt:  m.interrupt,
-		Blocks:     a.blocks,
-		Only:       m.only,
-		Noise:      noise.Densities(),
+		Rig:       m.rig,
+		Source:    tee(m.pace, recorder)(ctx, m.stream),
+		Live:      m.live,
+		Interrupt: m.interrupt,
+		Blocks:    a.blocks,
+		Only:      m.only,
+		Noise:     noise.Densities(),
+
+		Confidence:   a.confidence,
+		Simultaneous: a.simultaneous,
+
 		Trouble:    func() []string { return recorderTrouble(recorder) },
 		OnProgress: progress.show,
 	}

@@ -4,9 +4,12 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 
 	"github.com/spf13/pflag"
+
+	"shakerwatch/estimate"
 )
 
 // options are the flags of all commands together.
@@ -25,6 +28,10 @@ type options struct {
 	setup    bool
 	encoding string
 	help     bool
+
+	excitation   string
+	confidence   float64
+	simultaneous bool
 
 	flags *pflag.FlagSet
 }
@@ -45,6 +52,9 @@ func (o *options) parse(args []string) ([]string, error) {
 	f.Float64Var(&o.pace, "pace", 1, "replay so many times as fast as real time; 0 is as fast as the machine goes\n(default 1, or 0 with --headless)")
 	f.StringVar(&o.only, "only", "", "replay: average exactly the blocks that this summary.json lists")
 	f.StringVar(&o.noise, "noise", "", "noise measurement of this rig, noise.npz of a setup check")
+	f.StringVar(&o.excitation, "excitation", "random", "demo: drive the simulated shakers with random, burst or periodic signals")
+	f.Float64Var(&o.confidence, "confidence", estimate.DefaultLevel, "probability with which a confidence region holds the true frequency response")
+	f.BoolVar(&o.simultaneous, "simultaneous", false, "confidence regions hold for all forces of a response at once")
 	f.StringVar(&o.record, "record", "", "live: record to this WAV file (with --out, to recording.wav there)")
 	f.BoolVar(&o.noRecord, "no-record", false, "live: do not record")
 	f.BoolVar(&o.reopen, "reopen", false, "live, sound card: wait for a device that went away")
@@ -65,6 +75,10 @@ func (o *options) checkValues() error {
 		return unusablef("--blocks %d: choose 1 or more", o.blocks)
 	case !(o.pace >= 0) || math.IsInf(o.pace, 0):
 		return unusablef("--pace %v: choose 0 or more", o.pace)
+	case !slices.Contains([]string{"random", "burst", "periodic"}, o.excitation):
+		return unusablef("--excitation %s: choose random, burst or periodic", o.excitation)
+	case !(o.confidence > 0 && o.confidence < 1):
+		return unusablef("--confidence %v: choose a probability between 0 and 1, such as 0.95", o.confidence)
 	case o.replace && o.out == "" && o.record == "":
 		return unusablef("--replace: there is nothing to replace without --out DIR: add it")
 	case f.Changed("out") && o.out == "":
@@ -81,9 +95,9 @@ func (o *options) checkValues() error {
 
 // allowedFlags are the flags of each command.
 var allowedFlags = map[string][]string{
-	"":        {"out", "replace", "listen", "headless", "blocks", "noise"},
-	"live":    {"out", "replace", "listen", "headless", "blocks", "noise", "record", "no-record", "reopen", "setup", "encoding"},
-	"replay":  {"out", "replace", "listen", "headless", "blocks", "noise", "pace", "only"},
+	"":        {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "excitation"},
+	"live":    {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "record", "no-record", "reopen", "setup", "encoding"},
+	"replay":  {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "pace", "only"},
 	"check":   {},
 	"devices": {},
 }

@@ -16,9 +16,6 @@ func (a *app) replay(ctx context.Context, args []string) error {
 	if err != nil {
 		return unusable(err)
 	}
-	if err := computable(r); err != nil {
-		return unusable(err)
-	}
 	recording, err := wav.Open(args[1])
 	if err != nil {
 		return unusable(err)
@@ -49,7 +46,10 @@ func (a *app) replay(ctx context.Context, args []string) error {
 			return acquire.Pace(ctx, s, factor)
 		},
 		frames: recording.Frames(),
-		only:   only,
+
+		replayed: args[1],
+
+		only: only,
 	})
 }
 

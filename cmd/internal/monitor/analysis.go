@@ -19,8 +19,9 @@ type analysis struct {
 	watch   *watch.Watch
 
 	counts  Counts
-	timeS   float64 // at the end of the last block seen
-	trouble string  // what keeps blocks from being found, empty for nothing
+	timeS   float64        // at the end of the last block seen
+	trouble string         // what keeps blocks from being found, empty for nothing
+	decay   *spectra.Decay // nil but with burst excitation
 	events  []watch.Event
 
 	// Those waiting, scratch of one batch.
@@ -35,7 +36,7 @@ func newAnalysis(c Config, from *intake, stop func()) *analysis {
 	window := spectra.Window(c.Rig.Analysis.Window).Values(g.Block)
 	average := spectra.NewAverage(estimate.ShapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz, estimate.AveragingOf(c.Rig))
 	workers := spectra.NewWorkers(c.Workers)
-	return &analysis{
+	a := &analysis{
 		config:  c,
 		from:    from,
 		stop:    stop,
@@ -44,6 +45,10 @@ func newAnalysis(c Config, from *intake, stop func()) *analysis {
 		engine:  spectra.NewEngine(average, window, workers),
 		watch:   watch.New(names(c.Rig)),
 	}
+	if c.Rig.Analysis.Excitation == "burst" {
+		a.decay = spectra.NewDecay(len(c.Rig.Channels()), g.Block, c.Rig.Analysis.MinFrequencyHz/g.RateHz)
+	}
+	return a
 }
 
 func (a *analysis) close() { a.workers.Close() }
@@ -129,6 +134,9 @@ func (a *analysis) judge(c cut) {
 	}
 	a.counts.Averaged++
 	a.accepted = append(a.accepted, c.block)
+	if a.decay != nil {
+		a.decay.Add(c.block.Samples)
+	}
 }
 
 func (a *analysis) raise(e watch.Evidence) {
@@ -172,9 +180,24 @@ func (a *analysis) viewTo(v *view) {
 	if a.trouble != "" {
 		v.standing = append(v.standing, a.trouble)
 	}
+	if text := a.ends().Undecayed(names(a.config.Rig)); text != "" {
+		v.standing = append(v.standing, text)
+	}
 	if a.config.Trouble != nil {
 		v.standing = append(v.standing, a.config.Trouble()...)
 	}
+}
+
+// ends is how the signals of each channel end; empty but with burst excitation.
+func (a *analysis) ends() (d estimate.Decay) {
+	if a.decay == nil {
+		return d
+	}
+	for ch := range a.config.Rig.Channels() {
+		d.EndDB = append(d.EndDB, a.decay.DB(ch))
+		d.FallDB = append(d.FallDB, a.decay.FallDB(ch))
+	}
+	return d
 }
 
 // result is the outcome. The goroutines must have ended.
@@ -185,10 +208,12 @@ func (a *analysis) result(t *intake) *Result {
 	}
 	a.viewTo(v)
 	j := newJudge(a.config)
-	estimates := estimate.New(estimate.ShapeOf(a.config.Rig), estimate.DrivingPoints(a.config.Rig))
+	estimates := newEstimates(a.config)
 	verdict := j.verdict(v, estimates)
 	return &Result{
 		Counts: a.counts, TimeS: a.timeS, Snapshot: v.snapshot, Estimates: estimates,
-		Progress: &j.progress, Verdict: verdict, Events: a.events,
+		Progress: &j.progress, Drift: j.drift, Resonances: j.resonances, Distortion: j.distortion,
+		Verdict: verdict, Events: a.events, Trouble: a.trouble, DecayDB: a.ends().EndDB,
+		status: newStatus(a.config.Rig, a.counts, a.timeS, v.snapshot, j, verdict),
 	}
 }

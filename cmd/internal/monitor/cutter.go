@@ -1,6 +1,9 @@
 package monitor
 
 import (
+	"math"
+	"slices"
+
 	"shakerwatch/acquire/rig"
 	"shakerwatch/spectra"
 )
@@ -20,18 +23,39 @@ type cutter interface {
 	Trouble() string  // what keeps blocks from being found, empty for nothing
 }
 
+// newCutter makes the cutter for a rig's excitation. only are the starts of the blocks wanted, in
+// source frames, or nil for those that it finds.
 func newCutter(r *rig.Rig, only []int64) cutter {
-	n := len(r.Channels())
-	return gridCutter{spectra.NewCutter(n, r.Grid.Block, r.Grid.Hop), r.Grid}
+	n, q, g := len(r.Channels()), len(r.Forces), r.Grid
+	rounded := func(s float64) int { return int(math.Round(s * g.RateHz)) }
+	switch {
+	case r.Analysis.Excitation == "random":
+		return gridCutter{spectra.NewCutter(n, g.Block, g.Hop), g.Block}
+	case only != nil:
+		return spectra.NewListed(n, g.Block*max(r.Periodic.KeepPeriods, 1), inAnalysisFrames(only, g.Decimation))
+	case r.Analysis.Excitation == "periodic":
+		return spectra.NewPeriodicCutter(n, q, g.Block, r.Periodic.SettlePeriods, r.Periodic.KeepPeriods, g.Decimation)
+	case r.Burst.TriggerForce != "":
+		channel := slices.IndexFunc(r.Forces, func(c rig.Channel) bool { return c.Name == r.Burst.TriggerForce })
+		return spectra.NewTriggerCutter(n, channel, g.Block, min(rounded(r.Burst.PreTriggerS), g.Block-1), r.Burst.TriggerLevel)
+	default:
+		return spectra.NewBurstCutter(n, q, g.Block, r.Burst.PeriodS*g.RateHz)
+	}
 }
 
+func inAnalysisFrames(starts []int64, decimation int) []int64 {
+	list := make([]int64, len(starts))
+	for i, s := range starts {
+		list[i] = s / int64(decimation)
+	}
+	return list
+}
+
+// A gridCutter is a spectra.Cutter, for which lost frames make no difference and nothing has to be found.
 type gridCutter struct {
 	*spectra.Cutter
-	grid rig.Grid
+	block int
 }
 
 func (c gridCutter) Put(frames []float64, _ bool) int { return c.Cutter.Put(frames) }
-func (c gridCutter) Start() int64                     { return c.Index() * int64(c.grid.Hop) }
-func (c gridCutter) Filled() float64                  { return float64(c.Cutter.Filled()) / float64(c.grid.Block) }
-func (c gridCutter) Oldest() int64                    { return c.Start() }
-func (c gridCutter) Trouble() string                  { return "" }
+func (c gridCutter) Filled() float64                  { return float64(c.Cutter.Filled()) / float64(c.block) }

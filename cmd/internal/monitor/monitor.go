@@ -42,6 +42,11 @@ type Config struct {
 	// reasons. nil is none.
 	Noise *setup.Noise
 
+	// Confidence is the probability of the confidence regions, 0 for estimate.DefaultLevel; Simultaneous
+	// has them hold for all forces of a response at once.
+	Confidence   float64
+	Simultaneous bool
+
 	// Trouble says what outside of the pipeline stands against the measurement, for the verdict's
 	// reasons. It may be called from several goroutines; nil is nothing.
 	Trouble func() []string
@@ -75,6 +80,19 @@ type Result struct {
 	Progress  *estimate.Progress
 	Verdict   estimate.Verdict
 	Events    []watch.Event
+
+	Drift      *estimate.Drift
+	Resonances *estimate.Resonances
+	Distortion *estimate.Distortion // nil but with periodic excitation
+
+	// DecayDB (q+p) is what is left of each channel's signal at the end of bursts' blocks, below its
+	// peak; nil but with burst excitation.
+	DecayDB []float64
+
+	// Trouble is what kept blocks from being found at the end, empty for nothing.
+	Trouble string
+
+	status web.Status
 }
 
 // Run drives the source through the pipeline until it ends, ctx ends or Config.Blocks are averaged,
@@ -114,7 +132,7 @@ func Run(ctx context.Context, c Config) (*Result, error) {
 
 	result := analysis.result(intake)
 	if c.OnRefresh != nil {
-		c.OnRefresh(result.status(c.Rig), result.Estimates)
+		c.OnRefresh(result.status, result.Estimates)
 	}
 	return result, capture.broken
 }

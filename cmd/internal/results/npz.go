@@ -29,14 +29,16 @@ func writeEstimates(w io.Writer, result *monitor.Result) error {
 	for _, pair := range e.ReciprocityPairs {
 		pairs = append(pairs, int64(pair[0]), int64(pair[1]))
 	}
-	return writeNPZ(w, []array{
+	arrays := []array{
 		{"frequency", []int{l}, e.FrequencyHz},
 		{"Gxx", []int{l, q, q}, s.Gxx},
 		{"Gyx", []int{l, p, q}, s.Gyx},
 		{"Gyy", []int{l, p}, s.Gyy},
 		{"H", []int{l, p, q}, e.H},
 		{"multiple_coherence", []int{l, p}, e.MultipleCoherence},
+		{"partial_coherence", []int{l, p, q}, e.PartialCoherence},
 		{"random_error", []int{l, p, q}, e.RandomError},
+		{"confidence_radius", []int{l, p, q}, e.ConfidenceRadius},
 		{"force_condition", []int{l}, e.ForceCondition},
 		{"force_condition_raw", []int{l}, e.ForceConditionRaw},
 		{"force_coherence", []int{l, q}, e.ForceCoherence},
@@ -44,7 +46,20 @@ func writeEstimates(w io.Writer, result *monitor.Result) error {
 		{"reciprocity_pairs", []int{k, 2}, pairs},
 		{"reciprocity_error", []int{l, k}, e.ReciprocityError},
 		{"effective_averages", []int{}, []float64{e.EffectiveAverages}},
-	})
+		{"drift", []int{p, q}, result.Drift.Ratio},
+	}
+	if d := result.Distortion; d != nil {
+		arrays = append(arrays,
+			array{"noise_force", []int{l, q}, d.NoiseForce},
+			array{"noise_response", []int{l, p}, d.NoiseResponse},
+			array{"distortion_response", []int{l, p}, d.DistortionResponse},
+			array{"distortion_chance", []int{l, p}, d.Chance},
+		)
+	}
+	if result.DecayDB != nil {
+		arrays = append(arrays, array{"decay_db", []int{q + p}, result.DecayDB})
+	}
+	return writeNPZ(w, arrays)
 }
 
 // stamp is the time that every member bears, so that equal results are equal bytes. It is the
