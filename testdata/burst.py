@@ -10,14 +10,14 @@ def above(rig, block):
     """The block without what lies below min_frequency."""
     if rig.min_frequency_hz == 0:
         return block
-    b, a = signal.butter(2, rig.min_frequency_hz, "highpass", fs=rig.rate_hz)
-    return signal.lfilter(b, a, block, axis=0)
+    sections = signal.butter(4, rig.min_frequency_hz, "highpass", fs=rig.rate_hz, output="sos")
+    return signal.sosfilt(sections, block, axis=0)
 
 
 def decay_db(rig, values, starts):
     """(q + p) dB: the last of SEGMENTS equal parts of the block against the one with most.
 
-    Above min_frequency, each block filtered by itself from rest (Butterworth, second order).
+    Above min_frequency, each block filtered by itself from rest (Butterworth, fourth order).
     Mean square about the channel's offset, summed over the blocks; the offset is the mean of the
     last segments of all blocks together, where the signal is gone but an offset is not. NaN for
     channels that never differ from their offset, and with fewer than two blocks, where what is left
