@@ -98,7 +98,7 @@ func (r *modalRun) step() {
 func (r *modalRun) run(blocks int) {
 	for r.average.Len() < blocks {
 		r.step()
-		r.cutter.Put(r.frame)
+		r.cutter.Put(r.frame, false)
 		if !r.cutter.Full() {
 			continue
 		}
@@ -107,9 +107,8 @@ func (r *modalRun) run(blocks int) {
 			r.one.ChannelTo(r.lines, ch, r.Channels(), r.samples[ch*r.block:(ch+1)*r.block])
 		}
 		r.average.Sum([][]complex128{r.lines}, 0, r.Lines)
-		start := r.cutter.Index()
+		r.average.Count(r.cutter.Start())
 		r.cutter.Advance()
-		r.average.Count(start * int64(r.block-r.cutter.Filled())) // what is left of the block is its overlap
 	}
 }
 

@@ -6,7 +6,7 @@ package spectra
 // Put takes frames until a block is full; the caller copies the block out, then calls Advance:
 //
 //	for len(frames) > 0 {
-//		frames = frames[c.Put(frames):]
+//		frames = frames[c.Put(frames, false):]
 //		if c.Full() {
 //			c.CopyTo(dst)
 //			c.Advance()
@@ -29,8 +29,8 @@ func NewCutter(channels, block, hop int) *Cutter {
 }
 
 // Put takes frames (channel fastest) until the block is full and returns how many samples it took.
-// It panics when len(frames) is no multiple of the number of channels.
-func (c *Cutter) Put(frames []float64) int {
+// Whether they stand for lost ones makes no difference. It panics when len(frames) is no multiple of the number of channels.
+func (c *Cutter) Put(frames []float64, _ bool) int {
 	if len(frames)%c.channels != 0 {
 		panic("spectra: cutter got a part of a frame")
 	}
@@ -51,8 +51,17 @@ func (c *Cutter) Full() bool { return c.filled == c.block }
 // Index is the number k of the block that is being filled.
 func (c *Cutter) Index() int64 { return c.index }
 
-// Filled is the number of frames of the current block that are here.
-func (c *Cutter) Filled() int { return c.filled }
+// Filled is the share, 0 to 1, of the block that is being filled that is here.
+func (c *Cutter) Filled() float64 { return float64(c.filled) / float64(c.block) }
+
+// Start is the first frame of the block that is being filled, counted over the stream.
+func (c *Cutter) Start() int64 { return c.index * int64(c.hop) }
+
+// Oldest is a frame before which neither the block that is being filled nor a later one starts.
+func (c *Cutter) Oldest() int64 { return c.Start() }
+
+// Trouble is empty: nothing keeps the blocks of a grid from being found.
+func (c *Cutter) Trouble() string { return "" }
 
 // CopyTo copies the block, channel by channel, block samples each, into dst. It panics when dst
 // has another length or the block is not full.

@@ -15,7 +15,7 @@ func cutAll(c *Cutter, frames []float64, channels, block int, portions []int) []
 		part := frames[:n]
 		frames = frames[n:]
 		for len(part) > 0 {
-			part = part[c.Put(part):]
+			part = part[c.Put(part, false):]
 			if c.Full() {
 				dst := make([]float64, channels*block)
 				c.CopyTo(dst)
@@ -59,13 +59,31 @@ func TestCutterCutsTheGrid(t *testing.T) {
 	})
 }
 
+func TestCutterStarts(t *testing.T) {
+	c := NewCutter(2, 6, 4)
+	frames := make([]float64, 2*6)
+	for _, want := range []int64{0, 4, 8} {
+		for len(frames) > 0 && !c.Full() {
+			frames = frames[c.Put(frames, false):]
+		}
+		if c.Start() != want || c.Oldest() != want {
+			t.Errorf("block %d starts at %d and nothing before %d, want %d", c.Index(), c.Start(), c.Oldest(), want)
+		}
+		c.Advance()
+		frames = make([]float64, 2*4)
+	}
+	if c.Trouble() != "" {
+		t.Errorf("a grid in trouble: %s", c.Trouble())
+	}
+}
+
 func TestCutterAllocatesNothing(t *testing.T) {
 	const channels, block, hop = 8, 256, 128
 	c := NewCutter(channels, block, hop)
 	frames, dst := make([]float64, 100*channels), make([]float64, channels*block)
 	allocs := testing.AllocsPerRun(100, func() {
 		for part := frames; len(part) > 0; {
-			part = part[c.Put(part):]
+			part = part[c.Put(part, false):]
 			if c.Full() {
 				c.CopyTo(dst)
 				c.Advance()

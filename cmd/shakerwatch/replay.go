@@ -75,9 +75,9 @@ func (a *app) onlyStarts(r *rig.Rig, frames int64) ([]int64, error) {
 		return nil, err
 	}
 	d := int64(r.Grid.Decimation)
-	step, apart := int64(r.Grid.Hop)*d, int64(1)
-	if step == 0 { // blocks that are found in the signals lie anywhere, but never overlap
-		step, apart = d, r.BlockFrames()
+	step := int64(r.Grid.Hop) * d
+	if step == 0 { // blocks that are found in the signals lie anywhere
+		step = d
 	}
 	for i, s := range starts {
 		switch {
@@ -85,8 +85,8 @@ func (a *app) onlyStarts(r *rig.Rig, frames int64) ([]int64, error) {
 			return nil, fmt.Errorf("%s: no block of %s starts at frame %d: give the summary of a run with the same [analysis]", a.only, r.Path, s)
 		case s+r.BlockFrames() > frames:
 			return nil, fmt.Errorf("%s: the block at frame %d lies beyond the %d frames of the recording: give the summary of this recording", a.only, s, frames)
-		case i > 0 && s < starts[i-1]+apart:
-			return nil, fmt.Errorf("%s: block_starts are not in ascending order, or too close, at frame %d: give a summary as it was written", a.only, s)
+		case i > 0 && s <= starts[i-1]:
+			return nil, fmt.Errorf("%s: block_starts are not in ascending order at frame %d: give a summary as it was written", a.only, s)
 		}
 	}
 	if starts == nil {

@@ -209,7 +209,7 @@ func measure(t testing.TB, r *rig.Rig, s Stage, frames []float64) Measurement {
 		}
 	}
 	for len(scaled) > 0 {
-		scaled = scaled[cutter.Put(scaled):]
+		scaled = scaled[cutter.Put(scaled, false):]
 		if !cutter.Full() {
 			break
 		}

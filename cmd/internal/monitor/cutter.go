@@ -30,7 +30,7 @@ func newCutter(r *rig.Rig, only []int64) cutter {
 	rounded := func(s float64) int { return int(math.Round(s * g.RateHz)) }
 	switch {
 	case r.Analysis.Excitation == "random":
-		return gridCutter{spectra.NewCutter(n, g.Block, g.Hop), g.Block}
+		return spectra.NewCutter(n, g.Block, g.Hop)
 	case only != nil:
 		return spectra.NewListed(n, g.Block*max(r.Periodic.KeepPeriods, 1), inAnalysisFrames(only, g.Decimation))
 	case r.Analysis.Excitation == "periodic":
@@ -50,12 +50,3 @@ func inAnalysisFrames(starts []int64, decimation int) []int64 {
 	}
 	return list
 }
-
-// A gridCutter is a spectra.Cutter, for which lost frames make no difference and nothing has to be found.
-type gridCutter struct {
-	*spectra.Cutter
-	block int
-}
-
-func (c gridCutter) Put(frames []float64, _ bool) int { return c.Cutter.Put(frames) }
-func (c gridCutter) Filled() float64                  { return float64(c.Cutter.Filled()) / float64(c.block) }
