@@ -68,6 +68,17 @@ func (a *Average) Averaging() Averaging { return a.averaging }
 // Len is the number of blocks, M.
 func (a *Average) Len() int { return a.starts.Len() }
 
+// Reset forgets all blocks and keeps the memory.
+func (a *Average) Reset() {
+	a.sums.reset()
+	a.scatter.reset()
+	a.starts = Starts{}
+	a.effective.reset()
+	if a.halves != nil {
+		a.halves.counts = [2]int{}
+	}
+}
+
 // Sum adds the products of lines lo to hi-1 of transformed blocks, each (line, channel) with the
 // forces first, in the order given. Blocks whose products were summed on all lines must be
 // entered with Count before the next snapshot, one by one where Halves are kept.

@@ -54,6 +54,13 @@ func (d *Decay) Add(samples []float64) {
 	}
 }
 
+// Reset forgets all blocks.
+func (d *Decay) Reset() {
+	d.blocks = 0
+	clear(d.sums)
+	clear(d.squares)
+}
+
 // segment is where the j-th segment begins and ends.
 func (d *Decay) segment(j int) (from, before int) {
 	return j * d.block / decaySegments, (j + 1) * d.block / decaySegments

@@ -52,6 +52,8 @@ func (e *Effective) Add(start int64) {
 	e.n++
 }
 
+func (e *Effective) reset() { e.n, e.weight, e.sum = 0, 0, 0 }
+
 // Weight is Σ w: the number of blocks of a plain mean.
 func (e *Effective) Weight() float64 { return e.weight }
 

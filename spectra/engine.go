@@ -41,7 +41,7 @@ type Engine struct {
 	lines   [][]complex128
 	periods [][]complex128
 	// Made once, so that a batch allocates nothing.
-	transformOne, sumRange func(worker, item int)
+	transformSome, sumRange func(worker, item int)
 }
 
 // NewEngine makes an Engine that feeds average with blocks weighted by window's values.
@@ -50,7 +50,7 @@ func NewEngine(average *Average, window []float64, workers *Workers) *Engine {
 	for range workers.Len() {
 		e.transforms = append(e.transforms, NewTransform(window))
 	}
-	e.transformOne = e.transformChannel
+	e.transformSome = e.transformGroup
 	e.sumRange = e.sumLines
 	return e
 }
@@ -58,7 +58,7 @@ func NewEngine(average *Average, window []float64, workers *Workers) *Engine {
 // Transform fills the Lines of every block from its Samples.
 func (e *Engine) Transform(blocks []*Block) {
 	e.batch = blocks
-	e.workers.Each(len(blocks)*e.average.shape.Channels(), e.transformOne)
+	e.workers.Each(len(blocks)*groups(e.average.shape), e.transformSome)
 }
 
 // Add sums transformed blocks into the average, in the order given, and enters them in its list.
@@ -83,32 +83,39 @@ func (e *Engine) add(blocks []*Block) {
 	}
 }
 
-func (e *Engine) transformChannel(worker, item int) {
-	channels := e.average.shape.Channels()
-	b, ch := e.batch[item/channels], item%channels
+// groups is how many transforms a block takes.
+func groups(shape Shape) int { return (shape.Channels() + together - 1) / together }
+
+func (e *Engine) transformGroup(worker, item int) {
+	channels, n := e.average.shape.Channels(), e.samples
+	b, first := e.batch[item/groups(e.average.shape)], item%groups(e.average.shape)*together
+	count := min(together, channels-first)
 	t := e.transforms[worker]
 	if len(b.Periods) == 0 {
-		t.ChannelTo(b.Lines, ch, channels, b.Samples[ch*e.samples:(ch+1)*e.samples])
+		t.groupTo(b.Lines, first, count, channels, b.Samples[first*n:], n, n)
 		return
 	}
 	k := len(b.Periods)
-	for n, lines := range b.Periods {
-		t.ChannelTo(lines, ch, channels, b.Samples[(ch*k+n)*e.samples:][:e.samples])
+	for i, lines := range b.Periods {
+		t.groupTo(lines, first, count, channels, b.Samples[(first*k+i)*n:], n, k*n)
 	}
-	centre(b, ch, channels)
+	centre(b, first, count, channels)
 }
 
-// centre moves the mean of the transforms of a block's periods into its Lines, for one channel.
-func centre(b *Block, channel, channels int) {
+// centre moves the mean of the transforms of a block's periods into its Lines, for count channels
+// from the first one on.
+func centre(b *Block, first, count, channels int) {
 	share := complex(1/float64(len(b.Periods)), 0)
-	for at := channel; at < len(b.Lines); at += channels {
-		var sum complex128
-		for _, lines := range b.Periods {
-			sum += lines[at]
-		}
-		b.Lines[at] = sum * share
-		for _, lines := range b.Periods {
-			lines[at] -= b.Lines[at]
+	for line := first; line < len(b.Lines); line += channels {
+		for at := line; at < line+count; at++ {
+			var sum complex128
+			for _, lines := range b.Periods {
+				sum += lines[at]
+			}
+			b.Lines[at] = sum * share
+			for _, lines := range b.Periods {
+				lines[at] -= b.Lines[at]
+			}
 		}
 	}
 }

@@ -1,8 +1,10 @@
 package spectra
 
+import "shakerwatch/spectra/kernel"
+
 // sums are the summed products of some blocks, line by line.
 type sums struct {
-	gxx   []complex128 // (line, i, j); only j <= i is summed
+	gxx   []complex128 // (line, i, j)
 	gyx   []complex128 // (line, o, i)
 	gyy   []float64    // (line, o)
 	pairs []complex128 // (line, pair)
@@ -18,6 +20,13 @@ func (s *sums) copyFrom(from sums) {
 	copy(s.gyx, from.gyx)
 	copy(s.gyy, from.gyy)
 	copy(s.pairs, from.pairs)
+}
+
+func (s *sums) reset() {
+	clear(s.gxx)
+	clear(s.gyx)
+	clear(s.gyy)
+	clear(s.pairs)
 }
 
 // line is the part of one line.
@@ -45,20 +54,9 @@ func (s *sums) scale(by float64) {
 
 // add adds the products of one line of one block.
 func (s *sums) add(x, y []complex128, pairs [][2]int) {
-	q := len(x)
-	for i, xi := range x {
-		row := s.gxx[i*q : i*q+i+1]
-		for j := range row {
-			row[j] += product(xi, x[j])
-		}
-	}
-	for o, yo := range y {
-		row := s.gyx[o*q : (o+1)*q]
-		for i := range row {
-			row[i] += product(yo, x[i])
-		}
-		s.gyy[o] += real(product(yo, yo))
-	}
+	kernel.AddOuter(s.gxx, x, x)
+	kernel.AddOuter(s.gyx, y, x)
+	kernel.AddPower(s.gyy, y)
 	for n, pair := range pairs {
 		s.pairs[n] += product(y[pair[0]], y[pair[1]])
 	}

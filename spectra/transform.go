@@ -1,26 +1,21 @@
 package spectra
 
-import "gonum.org/v1/gonum/dsp/fourier"
+import "shakerwatch/spectra/kernel"
 
-// A Transform takes the windowed discrete Fourier transform of one channel of a block at a time.
+// together is how many channels one transform takes side by side.
+const together = kernel.Lanes
+
+// A Transform takes the windowed discrete Fourier transform of a few channels of a block at a time.
 // It serves one goroutine; every worker has its own.
 type Transform struct {
-	fft      *fourier.FFT
-	window   []float64
-	windowed []float64
-	lines    []complex128 // all block/2 + 1 of them
+	kernel  *kernel.Transform
+	samples [together][]float64
 }
 
 // NewTransform makes a Transform for blocks that are as long as the window's values, of which it
-// keeps no copy: they must not change.
+// keeps a copy.
 func NewTransform(window []float64) *Transform {
-	n := len(window)
-	return &Transform{
-		fft:      fourier.NewFFT(n),
-		window:   window,
-		windowed: make([]float64, n),
-		lines:    make([]complex128, n/2+1),
-	}
+	return &Transform{kernel: kernel.NewTransform(window)}
 }
 
 // ChannelTo writes the transform of samples, Σ w(n) x(n) e^{-2πikn/N}, for lines k = 0, 1, ...
@@ -29,15 +24,15 @@ func NewTransform(window []float64) *Transform {
 //
 // Each channel has a transform of its own: nothing of one leaks into another.
 func (t *Transform) ChannelTo(dst []complex128, channel, channels int, samples []float64) {
-	if len(samples) != len(t.window) {
-		panic("spectra: block and window differ in length")
+	t.samples[0] = samples
+	t.kernel.ChannelsTo(dst, channel, channels, t.samples[:1])
+}
+
+// groupTo is ChannelTo for count channels from the first one on, the samples of one stride behind those
+// of the one before it.
+func (t *Transform) groupTo(dst []complex128, first, count, channels int, samples []float64, n, stride int) {
+	for c := range count {
+		t.samples[c] = samples[c*stride:][:n]
 	}
-	for i, w := range t.window {
-		t.windowed[i] = w * samples[i]
-	}
-	t.fft.Coefficients(t.lines, t.windowed)
-	lines := t.lines[:len(dst)/channels]
-	for k, v := range lines {
-		dst[k*channels+channel] = v
-	}
+	t.kernel.ChannelsTo(dst, first, channels, t.samples[:count])
 }
