@@ -14,6 +14,8 @@ const (
 	Settling  State = "settling"  // too few averages to judge anything
 	Averaging State = "averaging" // sound, more needed
 	Enough    State = "enough"    // the target is met
+
+	StopAndLook State = "stop-and-look" // a fault stands
 )
 
 // A Verdict is the state and why.
@@ -37,6 +39,7 @@ func SettlingOf(r *rig.Rig) int {
 
 // Findings are what a verdict goes by besides the progress. What is nil was not looked for.
 type Findings struct {
+	Fault      bool        // one stands
 	Standing   []string    // sentences about what stands against the measurement at the moment
 	Drift      *Drift      // of the same estimates, as is Resonances
 	Resonances *Resonances // for leakage
@@ -52,6 +55,10 @@ func Judge(e *Estimates, p *Progress, t Target, found *Findings, frf func(n int)
 		found = &Findings{}
 	}
 	v := Verdict{State: Averaging, Reasons: append([]string{}, found.Standing...)}
+	if found.Fault {
+		v.State = StopAndLook
+		return v // how far the averaging is, is beside the point until somebody has looked
+	}
 	need := t.Settling
 	if need == 0 {
 		need = SettlingAverages(e.Forces)

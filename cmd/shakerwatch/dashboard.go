@@ -25,7 +25,7 @@ func (a *app) openDashboard(m measurement) (*dashboard, error) {
 	if err := loopback(a.listen); err != nil {
 		return nil, err
 	}
-	hub := web.NewHub(web.Run{Rig: m.rig, Kind: m.kind, Saves: a.out != "", Level: a.confidence})
+	hub := web.NewHub(web.Run{Rig: m.rig, Kind: m.kind, Saves: a.out != "", Level: a.confidence, Fixed: m.only != nil, Faults: m.breaker.offers()})
 	server := web.NewServer(hub, a.logger())
 	listener, err := net.Listen("tcp", a.listen)
 	if err != nil {
@@ -58,6 +58,7 @@ func (d *dashboard) observe(c *monitor.Config) {
 	c.OnEvent = d.hub.PublishEvent
 	c.OnLevels = d.hub.PublishLevels
 	c.OnRefresh = d.hub.Refresh
+	c.Commands = d.hub.Commands()
 }
 
 // onFinish calls finish when the page asks to finish and save. What it returns is done when ctx has

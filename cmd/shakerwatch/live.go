@@ -55,7 +55,7 @@ func (a *app) openInput(ctx context.Context, r *rig.Rig) (*input, error) {
 	}
 	switch r.Source.Kind {
 	case "demo":
-		return simulated(r)
+		return a.simulated(r)
 	case "pipe":
 		return a.openPipe(r)
 	default:
@@ -65,7 +65,7 @@ func (a *app) openInput(ctx context.Context, r *rig.Rig) (*input, error) {
 
 // kindFlags refuses flags that belong to another kind of source.
 func (a *app) kindFlags(kind string) error {
-	for _, f := range []struct{ name, kind string }{{"encoding", "pipe"}, {"reopen", "soundcard"}} {
+	for _, f := range []struct{ name, kind string }{{"encoding", "pipe"}, {"reopen", "soundcard"}, {"fault", "demo"}} {
 		if a.flags.Changed(f.name) && kind != f.kind {
 			return fmt.Errorf("--%s: it belongs to source kind %q, not to %q: leave it out", f.name, f.kind, kind)
 		}

@@ -22,6 +22,8 @@ type measurement struct {
 	frames int64 // in the recording; 0 when nobody knows
 	only   []int64
 
+	breaker *breaker // of the simulated rig; nil for others
+
 	replayed  string // path of the recording that is replayed, empty otherwise
 	interrupt func() // ends a Read that waits for ever; nil where none does
 
@@ -100,6 +102,9 @@ func (a *app) monitor(ctx context.Context, m measurement, board *dashboard, reco
 		OnProgress: progress.show,
 	}
 	board.observe(&c)
+	if m.breaker != nil {
+		c.OnBreak = m.breaker.obey
+	}
 	c.OnEvent = alsoTell(c.OnEvent, a, progress)
 	return monitor.Run(ctx, c)
 }

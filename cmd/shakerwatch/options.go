@@ -30,6 +30,7 @@ type options struct {
 	help     bool
 
 	excitation   string
+	faults       []string
 	confidence   float64
 	simultaneous bool
 
@@ -53,6 +54,7 @@ func (o *options) parse(args []string) ([]string, error) {
 	f.StringVar(&o.only, "only", "", "replay: average exactly the blocks that this summary.json lists")
 	f.StringVar(&o.noise, "noise", "", "noise measurement of this rig, noise.npz of a setup check")
 	f.StringVar(&o.excitation, "excitation", "random", "demo: drive the simulated shakers with random, burst or periodic signals")
+	f.StringArrayVar(&o.faults, "fault", nil, "simulated rig: something that breaks, such as detach@60s-90s:S2; may be given several times\n(--fault list prints all kinds)")
 	f.Float64Var(&o.confidence, "confidence", estimate.DefaultLevel, "probability with which a confidence region holds the true frequency response")
 	f.BoolVar(&o.simultaneous, "simultaneous", false, "confidence regions hold for all forces of a response at once")
 	f.StringVar(&o.record, "record", "", "live: record to this WAV file (with --out, to recording.wav there)")
@@ -95,8 +97,8 @@ func (o *options) checkValues() error {
 
 // allowedFlags are the flags of each command.
 var allowedFlags = map[string][]string{
-	"":        {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "excitation"},
-	"live":    {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "record", "no-record", "reopen", "setup", "encoding"},
+	"":        {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "excitation", "fault"},
+	"live":    {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "record", "no-record", "reopen", "setup", "encoding", "fault"},
 	"replay":  {"out", "replace", "listen", "headless", "blocks", "noise", "confidence", "simultaneous", "pace", "only"},
 	"check":   {},
 	"devices": {},

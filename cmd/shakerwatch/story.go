@@ -2,6 +2,8 @@ package main
 
 import (
 	"fmt"
+	"maps"
+	"slices"
 
 	"shakerwatch/cmd/internal/monitor"
 	"shakerwatch/estimate/watch"
@@ -26,6 +28,9 @@ func (a *app) tell(r *monitor.Result, saved string) {
 	}
 	fmt.Fprintf(a.stdout, "blocks: %d averaged (worth %.1f independent averages), %d set aside of %d seen\n",
 		r.Averaged, r.Snapshot.EffectiveAverages, r.SetAside, r.Seen)
+	for _, why := range slices.Sorted(maps.Keys(r.Aside)) {
+		fmt.Fprintf(a.stdout, "  set aside: %d %s\n", r.Aside[why], why)
+	}
 	if needed := float64(r.Progress.AveragesNeeded); needed == needed {
 		fmt.Fprintf(a.stdout, "averages needed: %.0f\n", needed)
 	}

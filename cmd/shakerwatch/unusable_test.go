@@ -63,7 +63,9 @@ func TestUnusableInput(t *testing.T) {
 		{"less than a block", []string{"replay", rigFile, short}, "are less than one block of"},
 		{"another rate", []string{"replay", with("rate.toml", rate, "rate = 5000"), recording}, "rate.toml:"},
 		{"channel beyond the recording", []string{"replay", with("channel.toml", "channel = 8", "channel = 9"), recording}, "channel.toml:"},
-		{"other averaging", []string{"replay", with("exp.toml", "[analysis]", "[analysis]\naveraging = \"exponential\"\nmemory = 10"), recording}, "exponential"},
+		{"confidence of nothing", []string{"replay", rigFile, recording, "--confidence", "1"}, "--confidence"},
+		{"excitation of a recording", []string{"replay", rigFile, recording, "--excitation", "burst"}, "--excitation"},
+		{"fault of a recording", []string{"replay", rigFile, recording, "--fault", "knock@1s:1z"}, "--fault"},
 		{"only without a summary", []string{"replay", rigFile, recording, "--only", filepath.Join(dir, "none.json")}, "none.json"},
 		{"only with something else", []string{"replay", rigFile, recording, "--only", rigFile}, "no summary"},
 		{"only with other blocks", []string{"replay", rigFile, recording, "--only", write("other.json", `{"block_starts": [0, 7]}`)}, "starts at frame 7"},
@@ -130,10 +132,6 @@ func TestCheck(t *testing.T) {
 		if !strings.Contains(stdout, want) {
 			t.Errorf("nothing about %q in\n%s", want, stdout)
 		}
-	}
-	rigFile, _ = caseFiles("estimator_hv")
-	if status, stdout, _ := shakerwatch(t, "check", rigFile); status != exitDone || !strings.Contains(stdout, `estimator = "hv" is not computed`) {
-		t.Errorf("exit status %d and no word on what can't be computed:\n%s", status, stdout)
 	}
 }
 

@@ -16,13 +16,18 @@ type analysis struct {
 	workers *spectra.Workers
 	average *spectra.Average
 	engine  *spectra.Engine
-	watch   *watch.Watch
+	gate    *gate
+	desk    desk
 
 	counts  Counts
-	timeS   float64        // at the end of the last block seen
+	aside   map[watch.Kind]int64
+	base    Counts         // what was counted before the average was started over
+	timeS   float64        // at the end of the last block judged
+	last    int64          // the last block judged
 	trouble string         // what keeps blocks from being found, empty for nothing
 	decay   *spectra.Decay // nil but with burst excitation
 	events  []watch.Event
+	learnt  *spectra.Snapshot // for the watch
 
 	// Those waiting, scratch of one batch.
 	batch     []cut
@@ -34,7 +39,8 @@ type analysis struct {
 func newAnalysis(c Config, from *intake, stop func()) *analysis {
 	g := c.Rig.Grid
 	window := spectra.Window(c.Rig.Analysis.Window).Values(g.Block)
-	average := spectra.NewAverage(estimate.ShapeOf(c.Rig), window, g.Hop, g.Decimation, g.RateHz, estimate.AveragingOf(c.Rig))
+	shape, averaging := estimate.ShapeOf(c.Rig), estimate.AveragingOf(c.Rig)
+	average := spectra.NewAverage(shape, window, g.Hop, g.Decimation, g.RateHz, averaging)
 	workers := spectra.NewWorkers(c.Workers)
 	a := &analysis{
 		config:  c,
@@ -43,7 +49,12 @@ func newAnalysis(c Config, from *intake, stop func()) *analysis {
 		workers: workers,
 		average: average,
 		engine:  spectra.NewEngine(average, window, workers),
-		watch:   watch.New(names(c.Rig)),
+		gate:    newGate(c, workers),
+		aside:   make(map[watch.Kind]int64),
+	}
+	if a.gate.watch != nil {
+		// The watch needs neither parts nor noise.
+		a.learnt = spectra.NewSnapshot(shape, spectra.Averaging{Memory: averaging.Memory, Pairs: averaging.Pairs})
 	}
 	if c.Rig.Analysis.Excitation == "burst" {
 		a.decay = spectra.NewDecay(len(c.Rig.Channels()), g.Block, c.Rig.Analysis.MinFrequencyHz/g.RateHz)
@@ -53,33 +64,42 @@ func newAnalysis(c Config, from *intake, stop func()) *analysis {
 
 func (a *analysis) close() { a.workers.Close() }
 
-// run takes cuts until there are no more. Those that wait are worked on together.
+// run takes cuts, and what the operator asks, until there are no more cuts. Those that wait are worked
+// on together.
 func (a *analysis) run(o *observer) {
-	for c := range a.from.cuts {
-		a.batch = append(a.batch[:0], c)
-		for len(a.batch) < maxBlocks {
-			next, ok := a.more()
+	for {
+		select {
+		case c, ok := <-a.from.cuts:
 			if !ok {
-				break
+				a.end()
+				return
 			}
-			a.batch = append(a.batch, next)
+			a.gather(c)
+			a.work()
+		case command := <-a.config.Commands:
+			a.obey(command)
 		}
-		a.work()
 		a.show(o)
 	}
 }
 
-// more is a cut that is waiting, if there is one.
-func (a *analysis) more() (cut, bool) {
-	select {
-	case c, ok := <-a.from.cuts:
-		return c, ok
-	default:
-		return cut{}, false
+// gather takes c and the cuts that wait behind it as a batch.
+func (a *analysis) gather(c cut) {
+	a.batch = append(a.batch[:0], c)
+	for len(a.batch) < maxBlocks {
+		select {
+		case next, ok := <-a.from.cuts:
+			if !ok {
+				return
+			}
+			a.batch = append(a.batch, next)
+		default:
+			return
+		}
 	}
 }
 
-// work takes a batch to its end: into the average or aside.
+// work takes a batch through the gate.
 func (a *analysis) work() {
 	a.transform = a.transform[:0]
 	for _, c := range a.batch {
@@ -90,58 +110,102 @@ func (a *analysis) work() {
 	if !a.complete() {
 		a.engine.Transform(a.transform)
 	}
-	a.accepted = a.accepted[:0]
 	for _, c := range a.batch {
-		if a.complete() {
-			break // blocks behind the last one wanted are neither seen nor set aside
-		}
-		if c.notice {
+		switch {
+		case a.complete(): // blocks behind the last one wanted are neither seen nor set aside
+			a.free(c.block)
+		case c.notice:
 			a.trouble, a.timeS = c.trouble, float64(c.before)/a.config.Rig.Source.RateHz
-			continue
+		default:
+			a.judge(c)
 		}
-		a.judge(c)
 	}
-	a.engine.Add(a.accepted)
-	for _, b := range a.transform {
-		a.from.free <- b
-	}
+	a.flush()
 	if a.complete() {
 		a.stop()
 	}
 }
 
-// judge counts a block and decides where it goes.
+// judge has a block judged and follows the decisions that are due.
 func (a *analysis) judge(c cut) {
-	rateHz := a.config.Rig.Source.RateHz
-	a.timeS = float64(c.before) / rateHz
-	a.counts.Seen++
-	a.counts.Frames, a.counts.Gaps = c.before, c.gaps
-	if c.atLimit != nil {
-		a.counts.Overranges++
-	}
-	if c.overload {
-		a.counts.Overloads++
-	}
-	if a.config.Only == nil {
-		a.raise(watch.Evidence{
-			Block: c.index, StartS: float64(c.start) / rateHz, EndS: a.timeS,
-			Lost: c.lost, AtLimit: c.atLimit,
-		})
-	}
-	if c.block == nil {
-		a.counts.SetAside++
+	a.timeS, a.last = float64(c.before)/a.config.Rig.Source.RateHz, c.index
+	if a.desk.startedOver(c) {
+		a.free(c.block)
 		return
 	}
-	a.counts.Averaged++
-	a.accepted = append(a.accepted, c.block)
-	if a.decay != nil {
-		a.decay.Add(c.block.Samples)
+	n := len(a.events)
+	a.events = a.gate.judge(a.events, c, a.desk.paused(c))
+	a.publish(n)
+	a.settle()
+}
+
+// settle follows the gate's decisions.
+func (a *analysis) settle() {
+	for _, d := range a.gate.decisions() {
+		if a.complete() {
+			a.free(d.block)
+			continue
+		}
+		a.count(d)
+		if !d.average {
+			a.free(d.block)
+			continue
+		}
+		a.accepted = append(a.accepted, d.block)
+		if a.decay != nil {
+			a.decay.Add(d.block.Samples)
+		}
+		if a.gate.wants(int(a.counts.Averaged)) {
+			a.flush()
+			a.average.SnapshotTo(a.learnt)
+			a.gate.learn(a.learnt)
+		}
 	}
 }
 
-func (a *analysis) raise(e watch.Evidence) {
-	n := len(a.events)
-	a.events = a.watch.Judge(a.events, e)
+// count enters a decision in the counts.
+func (a *analysis) count(d decision) {
+	a.counts.Frames, a.counts.Gaps = d.before-a.base.Frames, d.gaps-a.base.Gaps
+	a.counts.Seen++
+	if d.atLimit {
+		a.counts.Overranges++
+	}
+	if d.overload {
+		a.counts.Overloads++
+	}
+	if d.average {
+		a.counts.Averaged++
+		return
+	}
+	a.counts.SetAside++
+	a.aside[d.kind]++
+}
+
+// flush averages the accepted blocks.
+func (a *analysis) flush() {
+	a.engine.Add(a.accepted)
+	for _, b := range a.accepted {
+		a.free(b)
+	}
+	a.accepted = a.accepted[:0]
+}
+
+// free gives a block's memory back.
+func (a *analysis) free(b *spectra.Block) {
+	if b != nil {
+		a.from.free <- b
+	}
+}
+
+// end decides on the blocks that still wait when no more will come.
+func (a *analysis) end() {
+	a.gate.end()
+	a.settle()
+	a.flush()
+}
+
+// publish hands on the events from the n-th on.
+func (a *analysis) publish(n int) {
 	if a.config.OnEvent == nil {
 		return
 	}
@@ -175,8 +239,8 @@ func (a *analysis) show(o *observer) {
 // viewTo writes the present state into v.
 func (a *analysis) viewTo(v *view) {
 	a.average.SnapshotTo(v.snapshot)
-	v.counts, v.timeS = a.counts, a.timeS
-	v.standing = a.watch.Standing(v.standing[:0])
+	v.counts, v.timeS, v.paused = a.counts, a.timeS, a.desk.stopped
+	v.standing, v.fault = a.gate.standing(v.standing[:0])
 	if a.trouble != "" {
 		v.standing = append(v.standing, a.trouble)
 	}
@@ -204,7 +268,7 @@ func (a *analysis) ends() (d estimate.Decay) {
 func (a *analysis) result(t *intake) *Result {
 	v := newView(a.config.Rig)
 	if !a.complete() {
-		a.counts.Frames, a.counts.Gaps = t.frames, t.gaps
+		a.counts.Frames, a.counts.Gaps = t.frames-a.base.Frames, t.gaps-a.base.Gaps
 	}
 	a.viewTo(v)
 	j := newJudge(a.config)
@@ -213,7 +277,7 @@ func (a *analysis) result(t *intake) *Result {
 	return &Result{
 		Counts: a.counts, TimeS: a.timeS, Snapshot: v.snapshot, Estimates: estimates,
 		Progress: &j.progress, Drift: j.drift, Resonances: j.resonances, Distortion: j.distortion,
-		Verdict: verdict, Events: a.events, Trouble: a.trouble, DecayDB: a.ends().EndDB,
-		status: newStatus(a.config.Rig, a.counts, a.timeS, v.snapshot, j, verdict),
+		Verdict: verdict, Events: a.events, Aside: a.aside, Trouble: a.trouble, DecayDB: a.ends().EndDB,
+		status: newStatus(a.config.Rig, v, j, verdict),
 	}
 }

@@ -2,6 +2,7 @@ package monitor
 
 import (
 	"math"
+	"sync/atomic"
 	"time"
 
 	"shakerwatch/acquire/decimate"
@@ -53,10 +54,11 @@ type intake struct {
 	atLimit []marks // by channel
 	pending []cut   // in order
 
-	frames    int64 // source frames taken, lost ones among them
-	cutFrames int64 // analysis frames that the cutter has taken
-	gaps      int64 // stretches of lost frames so far
-	gapBefore bool  // the newest frame was a lost one
+	frames    int64        // source frames taken, lost ones among them
+	taken     atomic.Int64 // the same, for other goroutines
+	cutFrames int64        // analysis frames that the cutter has taken
+	gaps      int64        // stretches of lost frames so far
+	gapBefore bool         // the newest frame was a lost one
 	scaled    []float64
 	analysis  []float64 // frames that left the decimator
 	zeros     []float64
@@ -99,7 +101,7 @@ func newIntake(c Config, from *capture) *intake {
 	}
 	periods := r.Periodic.KeepPeriods
 	perBlock := bytesPerFloat * (n*r.Grid.Block*max(periods, 1) + 2*n*shape.Lines*(1+periods))
-	count := min(max(blockMemory/perBlock, minBlocks), maxBlocks)
+	count := min(max(blockMemory/perBlock, minBlocks), maxBlocks) + watch.Delay(r)
 	t.free = make(chan *spectra.Block, count)
 	for range count {
 		t.free <- spectra.NewBlock(shape, r.Grid.Block, r.Periodic.KeepPeriods)
@@ -123,6 +125,9 @@ func (t *intake) run() {
 	t.handOn(math.MaxInt64)
 }
 
+// captured is how many source frames were taken so far. It may be called from any goroutine.
+func (t *intake) captured() int64 { return t.taken.Load() }
+
 // take takes captured frames.
 func (t *intake) take(frames []float64) {
 	n := len(t.factors)
@@ -131,6 +136,7 @@ func (t *intake) take(frames []float64) {
 	}
 	t.meter.add(frames, t.frames, t.atLimit)
 	t.frames += int64(len(frames) / n)
+	t.taken.Store(t.frames)
 	t.gapBefore = false
 
 	t.scaled = append(t.scaled[:0], frames...)
@@ -149,6 +155,7 @@ func (t *intake) take(frames []float64) {
 func (t *intake) skip(frames int64) {
 	t.lost.add(t.frames, t.frames+frames)
 	t.frames += frames
+	t.taken.Store(t.frames)
 	if !t.gapBefore {
 		t.gaps++
 		t.gapBefore = true

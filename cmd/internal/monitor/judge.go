@@ -48,11 +48,6 @@ func (j *judge) verdict(v *view, e *estimate.Estimates) estimate.Verdict {
 	if j.distortion != nil {
 		j.distortion.Update(v.snapshot, e)
 	}
-	found := &estimate.Findings{Standing: v.standing, Drift: j.drift, Resonances: j.resonances}
-	if j.config.Noise != nil {
-		if low := j.config.Noise.LowSignal(j.config.Rig, v.snapshot); low != "" {
-			found.Standing = append(found.Standing[:len(found.Standing):len(found.Standing)], low)
-		}
-	}
+	found := &estimate.Findings{Standing: v.standing, Fault: v.fault, Drift: j.drift, Resonances: j.resonances}
 	return estimate.Judge(e, &j.progress, j.target, found, func(n int) string { return frfName(j.config.Rig, n) })
 }

@@ -51,6 +51,12 @@ type Config struct {
 	// reasons. It may be called from several goroutines; nil is nothing.
 	Trouble func() []string
 
+	// Commands are what the operator asks; nil is nothing.
+	Commands <-chan web.Command
+
+	// OnBreak breaks or mends the simulated rig as a command says, and says in a sentence what it has done.
+	OnBreak func(web.Command) string
+
 	OnFrames   func(frames []float64) // what was captured of the channels in use, not to be kept
 	OnEvent    func(watch.Event)
 	OnLevels   func(web.Levels)
@@ -80,6 +86,10 @@ type Result struct {
 	Progress  *estimate.Progress
 	Verdict   estimate.Verdict
 	Events    []watch.Event
+
+	// Aside counts the blocks set aside by the kind of what stood against them; "held" is a block that
+	// was normal by itself while a fault stood. Never nil.
+	Aside map[watch.Kind]int64
 
 	Drift      *estimate.Drift
 	Resonances *estimate.Resonances

@@ -30,6 +30,8 @@ const rigText = `
 kind = "demo"
 rate = 1000
 channels = 4
+[watch]
+on_fault = "carry-on" # the channels are noise that has nothing to do with each other
 [analysis]
 max_frequency = %v
 line_spacing = %v

@@ -15,6 +15,8 @@ type view struct {
 	counts   Counts
 	timeS    float64
 	standing []string
+	fault    bool
+	paused   bool
 }
 
 func newView(r *rig.Rig) *view {
@@ -46,30 +48,32 @@ func (o *observer) run() {
 			o.spare = newEstimates(o.config)
 		}
 		verdict := o.judge.verdict(v, o.spare)
-		o.spare = o.config.OnRefresh(newStatus(o.config.Rig, v.counts, v.timeS, v.snapshot, o.judge, verdict), o.spare)
+		o.spare = o.config.OnRefresh(newStatus(o.config.Rig, v, o.judge, verdict), o.spare)
 		o.free <- v
 	}
 }
 
 func (o *observer) close() { close(o.ready) }
 
-func newStatus(r *rig.Rig, c Counts, timeS float64, s *spectra.Snapshot, j *judge, v estimate.Verdict) web.Status {
+func newStatus(r *rig.Rig, v *view, j *judge, verdict estimate.Verdict) web.Status {
+	c, s := v.counts, v.snapshot
 	blockS := math.NaN() // from one averaged block to the next, all things considered
 	if c.Averaged > 0 {
-		blockS = timeS / float64(c.Averaged)
+		blockS = v.timeS / float64(c.Averaged)
 	}
 	if r.Grid.Hop > 0 {
 		blockS = float64(r.Grid.Hop) / r.Grid.RateHz
 	}
 	p := &j.progress
 	return web.Status{
-		TimeS: timeS, Seen: c.Seen, Averaged: c.Averaged, SetAside: c.SetAside,
+		TimeS: v.timeS, Seen: c.Seen, Averaged: c.Averaged, SetAside: c.SetAside,
 		EffectiveAverages: s.EffectiveAverages,
 		AveragesNeeded:    p.AveragesNeeded,
 		NeededLow:         p.AveragesRange[0],
 		NeededHigh:        p.AveragesRange[1],
 		TimeToGoS:         estimate.Number(math.Max(0, float64(p.AveragesNeeded)-float64(c.Averaged)) * blockS),
-		Verdict:           v,
+		Verdict:           verdict,
+		Paused:            v.paused,
 		Progress:          p,
 		Gxx:               s.Gxx,
 		Gyy:               s.Gyy,

@@ -10,6 +10,7 @@ import (
 	"shakerwatch/acquire/rig"
 	"shakerwatch/cmd/internal/monitor"
 	"shakerwatch/estimate"
+	"shakerwatch/estimate/watch"
 )
 
 // Source is what summary.json says about where the samples came from.
@@ -21,16 +22,17 @@ type Source struct {
 }
 
 type summary struct {
-	Title             string           `json:"title"`
-	Source            Source           `json:"source"`
-	Analysis          analysis         `json:"analysis"`
-	BlocksSeen        int64            `json:"blocks_seen"`
-	BlocksAveraged    int64            `json:"blocks_averaged"`
-	BlocksSetAside    int64            `json:"blocks_set_aside"`
-	BlockStarts       []int64          `json:"block_starts"`
-	EffectiveAverages float64          `json:"effective_averages"`
-	Verdict           estimate.Verdict `json:"verdict"`
-	AveragesNeeded    estimate.Number  `json:"averages_needed"`
+	Title             string               `json:"title"`
+	Source            Source               `json:"source"`
+	Analysis          analysis             `json:"analysis"`
+	BlocksSeen        int64                `json:"blocks_seen"`
+	BlocksAveraged    int64                `json:"blocks_averaged"`
+	BlocksSetAside    int64                `json:"blocks_set_aside"`
+	SetAside          map[watch.Kind]int64 `json:"set_aside"` // why, by kind; "held" was normal by itself while a fault stood
+	BlockStarts       []int64              `json:"block_starts"`
+	EffectiveAverages float64              `json:"effective_averages"`
+	Verdict           estimate.Verdict     `json:"verdict"`
+	AveragesNeeded    estimate.Number      `json:"averages_needed"`
 
 	AveragesNeededRange [2]estimate.Number   `json:"averages_needed_range"` // holds it in nine of ten cases
 	Confidence          confidence           `json:"confidence"`
@@ -165,6 +167,7 @@ func writeSummary(w io.Writer, r *rig.Rig, s Source, noise *Noise, result *monit
 		BlocksSeen:        result.Seen,
 		BlocksAveraged:    result.Averaged,
 		BlocksSetAside:    result.SetAside,
+		SetAside:          result.Aside,
 		BlockStarts:       starts,
 		EffectiveAverages: result.Snapshot.EffectiveAverages,
 		Verdict:           result.Verdict,
