@@ -12,12 +12,14 @@ type file struct {
 	periodic  *section
 	forces    []*section // as rig.Forces
 	responses []*section // as rig.Responses
+	points    []*section // as rig.Points
 }
 
 // check reports what is wrong between keys, each of which may be right by itself.
 func (f *file) check(top *section) {
 	f.checkNames()
 	f.checkChannels()
+	f.checkPoints()
 	f.rig.rateLine = f.source.lineOf("rate")
 	if top.rep.unread {
 		return // what contradicts or misses something may be answered in the rest of the file

@@ -20,6 +20,7 @@ type Rig struct {
 	OnFault   string    // "hold" or "carry-on"
 	Forces    []Channel // q, in file order, at least one
 	Responses []Channel // p, in file order, at least one
+	Points    []Point   // in file order; can be none, and need not hold the points of all channels
 	Grid      Grid
 
 	rateLine int      // of [source] rate in the file, for messages

@@ -13,7 +13,7 @@ import (
 // unknown. Its methods report what is wrong and go on.
 type section struct {
 	rep   *report
-	kind  string // "force" or "response" for one of several
+	kind  string // "force", "response" or "point" for one of several
 	label string // for messages
 	line  int
 	table *table // nil when the file has none

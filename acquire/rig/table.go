@@ -147,6 +147,9 @@ func (r *Rig) writeWarnings(b *strings.Builder) {
 				f.Name, f.Point, f.Letter()))
 		}
 	}
+	for _, point := range r.unplaced() {
+		warnings = append(warnings, fmt.Sprintf("point %s has no [[point]]: the page's sketch leaves its channels out", point))
+	}
 	for _, c := range r.Channels() {
 		if c.LimitV > c.FullScaleV {
 			warnings = append(warnings, fmt.Sprintf(

@@ -54,11 +54,15 @@ func build(root *table, rep *report) *Rig {
 	r.OnFault = readWatch(top.section("watch"))
 	f.forces = top.sections("force")
 	f.responses = top.sections("response")
+	f.points = top.sections("point")
 	for _, s := range f.forces {
 		r.Forces = append(r.Forces, f.readChannel(s, "N"))
 	}
 	for _, s := range f.responses {
 		r.Responses = append(r.Responses, f.readChannel(s, "m/s^2", "g"))
+	}
+	for _, s := range f.points {
+		r.Points = append(r.Points, readPoint(s))
 	}
 	top.done()
 	f.check(top)

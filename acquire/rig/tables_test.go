@@ -147,7 +147,7 @@ func TestChannelValues(t *testing.T) {
 }
 
 func TestUnknownKeys(t *testing.T) {
-	const top = "title, source, analysis, burst, periodic, target, watch, force, response"
+	const top = "title, source, analysis, burst, periodic, target, watch, force, response, point"
 	for _, c := range []mistakeCase{
 		{"at the top", []string{`title = "Skid"`, `Title = "Skid"`}, []string{`1: unknown key "Title": known here are ` + top}},
 		{"a table", []string{"[[force]]\nchannel = 1\n", "[[points]]\nx = 1\n[Target]\n[[force]]\nchannel = 1\n"}, []string{
