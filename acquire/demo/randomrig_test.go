@@ -96,6 +96,25 @@ func TestRandomRigLevels(t *testing.T) {
 	}
 }
 
+// In a burst the drive is louder than over a whole period.
+func TestRandomRigHasHeadroomInBursts(t *testing.T) {
+	for seed := range uint64(6) {
+		r := drawn(t, seed, RandomOptions{Excitation: "burst"})
+		s, err := r.Source(r.Rig, 1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		v := read(t, s, 16*4096)
+		for _, c := range r.Rig.Channels() {
+			signal := column(t, r.Rig, v, c.Name)
+			headroomDB := -20 * math.Log10(math.Max(slices.Max(signal), -slices.Min(signal)))
+			if headroomDB < 1 || headroomDB > 20 {
+				t.Errorf("seed %d, %s: %.1f dB of headroom: want 1 to 20", seed, c.Name, headroomDB)
+			}
+		}
+	}
+}
+
 // What is measured on a rig with one force is the truth.
 func TestRandomRigTruth(t *testing.T) {
 	for seed, o := range []RandomOptions{

@@ -7,6 +7,7 @@ import "shakerwatch/acquire/rig"
 type Truth struct {
 	layout
 	forces, responses []rig.Channel
+	topHz             float64 // of the band
 }
 
 // NewTruth returns the truth about r. The error is that of New for channels that the structure does
@@ -16,7 +17,7 @@ func NewTruth(r *rig.Rig) (*Truth, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Truth{l, r.Forces, r.Responses}, nil
+	return &Truth{l, r.Forces, r.Responses, r.Analysis.MaxFrequencyHz}, nil
 }
 
 // H is the frequency response from a force to a response, indices in rig order, in m/s² per N for
