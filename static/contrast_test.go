@@ -59,6 +59,19 @@ func luminance(colour string) float64 {
 	return sum
 }
 
+// mix is the colour at a share of the way from a to b.
+func mix(a, b string, share float64) string {
+	mixed := "#"
+	for i := 1; i < 7; i += 2 {
+		var from, to int
+		if _, err := fmt.Sscanf(a[i:i+2]+" "+b[i:i+2], "%02x %02x", &from, &to); err != nil {
+			panic(a + ", " + b + ": " + err.Error())
+		}
+		mixed += fmt.Sprintf("%02x", int(math.Round(float64(from)+share*float64(to-from))))
+	}
+	return mixed
+}
+
 func TestContrastFormula(t *testing.T) {
 	// 21 by definition; 4.48 and 4.54 for the two greys around 4.5, from memory and well known.
 	for _, test := range []struct {
@@ -92,7 +105,7 @@ func TestContrast(t *testing.T) {
 			check("soft", back, leastText)
 			check("focus", back, leastCurve)
 		}
-		for _, state := range []string{"waiting", "settling", "averaging", "enough", "stop", "look"} {
+		for _, state := range []string{"waiting", "settling", "averaging", "enough", "stop", "look", "paused"} {
 			check("#ffffff", state, leastText)
 		}
 		check("caution-ink", "caution-paper", leastText)
@@ -102,6 +115,15 @@ func TestContrast(t *testing.T) {
 		check("panel", "ink", leastText)       // the strong button
 		check("plot-text", "panel", leastText)
 		check("plot-worst", "panel", leastText) // also the word of a raised event
+
+		check("flag", "panel", leastCurve)
+		for shade := range 11 { // of the map, in tenths, and the stroke on it: see heatpaint.js
+			stroke := "heat-over"
+			if shade > 5 {
+				stroke = "plot-text"
+			}
+			check(stroke, mix(colours["heat-low"], colours["heat-high"], float64(shade)/10), leastCurve)
+		}
 
 		curves := 0
 		for name := range colours {

@@ -1,6 +1,7 @@
 package web
 
 import (
+	"errors"
 	"log/slog"
 	"sync"
 	"time"
@@ -31,10 +32,14 @@ type browser struct {
 	wake   chan struct{} // there is news
 	quit   chan struct{} // closed when the server closes
 
-	mu     sync.Mutex // guards what the page asked
-	view   view
-	events bool // it asked for events
-	after  int64
+	mayControl bool // else it may only look
+
+	mu      sync.Mutex // guards what the page asked
+	view    view
+	events  bool // it asked for events
+	after   int64
+	alive   bool   // it asked whether the program is alive, and has no answer yet
+	refused string // why the last thing that it asked is not done, until it is told
 
 	sent sent // belongs to the writing goroutine
 }
@@ -42,7 +47,8 @@ type browser struct {
 // sent is what a page has.
 type sent struct {
 	refresh, levels, run, event, setup, findings int64 // numbers
-	view                                         view  // of refresh
+	held, marks, acknowledged, asked, broken     int64
+	view                                         view // of refresh
 }
 
 func newBrowser(h *Hub, conn *websocket.Conn, logger *slog.Logger) *browser {
@@ -55,7 +61,7 @@ func newBrowser(h *Hub, conn *websocket.Conn, logger *slog.Logger) *browser {
 // serve serves the page until it leaves, is let go or b.quit is closed. It returns when both of the
 // connection's goroutines are done.
 func (b *browser) serve() {
-	b.hub.join(b.wake)
+	b.sent.asked = b.hub.join(b.wake)
 	defer b.hub.leave(b.wake)
 	gone, written := make(chan struct{}), make(chan struct{})
 	go func() {
@@ -81,6 +87,11 @@ func (b *browser) read() {
 			return
 		}
 		r, err := parseRequest(text, b.hub.shape)
+		var told refusal
+		if errors.As(err, &told) {
+			b.refuse(string(told))
+			continue
+		}
 		if err != nil {
 			b.logger.Warn("request refused", keyError, err)
 			b.close(websocket.ClosePolicyViolation, "this page does not fit this program: load it again")
@@ -92,21 +103,57 @@ func (b *browser) read() {
 
 // heed does what the page asks.
 func (b *browser) heed(r request) {
+	if r.controls() && !b.mayControl {
+		b.refuse("This page may look, and no more.")
+		return
+	}
 	b.mu.Lock()
 	switch r.kind {
 	case selectView:
 		b.view = r.view
 	case sendEvents:
 		b.events, b.after = true, r.after
+	case stillAlive:
+		b.alive = true
 	}
 	b.mu.Unlock()
-	if r.kind == finishAndEnd {
+	b.wakeUp()
+	if r.controls() {
+		b.control(r)
+	}
+}
+
+// control has the run, or what all pages share, do what the page asks.
+func (b *browser) control(r request) {
+	no := ""
+	switch {
+	case r.command != nil:
+		no = b.hub.askCommand(*r.command)
+		b.logger.Info("command", keyAsked, r.kind, keyTaken, no == "")
+	case r.kind == finishAndEnd:
 		b.logger.Info("asked to finish")
 		b.hub.askFinish()
-	}
-	if r.kind == startMeasuring {
+	case r.kind == startMeasuring:
 		b.logger.Info("asked to measure", keyStage, r.stage, keyTaken, b.hub.askMeasure(r.stage))
+	case r.kind == acknowledge:
+		no = b.hub.askAcknowledge(r.event, r.before)
+	case r.kind == resetPeaks:
+		b.hub.askResetPeaks(r.channel)
 	}
+	if no != "" {
+		b.refuse(no)
+	}
+}
+
+// refuse tells the page why something is not done. Of several refusals it is told the last.
+func (b *browser) refuse(why string) {
+	b.mu.Lock()
+	b.refused = why
+	b.mu.Unlock()
+	b.wakeUp()
+}
+
+func (b *browser) wakeUp() {
 	select {
 	case b.wake <- struct{}{}:
 	default:
@@ -117,7 +164,7 @@ func (b *browser) heed(r request) {
 func (b *browser) write(gone <-chan struct{}) {
 	ping := time.NewTicker(pingPeriod)
 	defer ping.Stop()
-	if b.send(b.hub.description) != nil || b.sendNews() != nil {
+	if b.send(b.hub.description) != nil || b.send(accessMessage(b.mayControl)) != nil || b.sendNews() != nil {
 		return
 	}
 	for {
@@ -143,10 +190,11 @@ func (b *browser) write(gone <-chan struct{}) {
 func (b *browser) sendNews() error {
 	b.mu.Lock()
 	view, events, after := b.view, b.events, b.after
-	b.after = 0
+	own := b.ownNews()
+	b.after, b.alive, b.refused = 0, false, ""
 	b.mu.Unlock()
 
-	for _, text := range b.hub.news(&b.sent, events, after) {
+	for _, text := range append(own, b.hub.news(&b.sent, events, after)...) {
 		if err := b.send(text); err != nil {
 			return err
 		}
@@ -160,40 +208,6 @@ func (b *browser) sendNews() error {
 	}
 	b.sent.refresh, b.sent.view = number, view
 	return b.send(text)
-}
-
-// news returns the messages that a page which has s lacks, except results, and enters them in s. With
-// events, those behind number after, or behind s, are among them.
-func (h *Hub) news(s *sent, events bool, after int64) [][]byte {
-	var list [][]byte
-	h.mu.Lock()
-	defer h.mu.Unlock()
-	if events {
-		if after <= h.events.newest { // else it is a number of another run
-			s.event = max(s.event, after)
-		}
-		if text := h.events.message(s.event); text != nil {
-			list = append(list, text)
-			s.event = h.events.newest
-		}
-	}
-	if h.levels.number != s.levels {
-		s.levels = h.levels.number
-		list = append(list, h.levels.text)
-	}
-	if h.setup.state.number != s.setup {
-		s.setup = h.setup.state.number
-		list = append(list, h.setup.state.text)
-	}
-	if h.setup.findings.number != s.findings {
-		s.findings = h.setup.findings.number
-		list = append(list, h.setup.findings.text)
-	}
-	if h.run.number != s.run {
-		s.run = h.run.number
-		list = append(list, h.run.text)
-	}
-	return list
 }
 
 func (b *browser) send(text []byte) error {

@@ -3,6 +3,7 @@ package web
 import (
 	"encoding/json"
 	"fmt"
+	"log/slog"
 	"net"
 	"strings"
 	"sync"
@@ -108,7 +109,7 @@ func inBubble(t *testing.T, test func(t *testing.T, f *feed, h *Hub, l *pipeList
 	f := newFeed(t, 2, 5, 401)
 	f.add(12)
 	synctest.Test(t, func(t *testing.T) {
-		h := NewHub(f.rig, "demo", true)
+		h := NewHub(Run{Rig: f.rig, Kind: "demo", Saves: true})
 		s, l := NewServer(h, nil), newPipeListener()
 		served := make(chan error)
 		go func() { served <- s.Serve(l) }()
@@ -349,11 +350,103 @@ func TestNonsenseEndsTheConnection(t *testing.T) {
 				defer c.conn.Close()
 				c.next("describe")
 				go c.conn.WriteMessage(websocket.TextMessage, []byte(test.text))
-				_, _, err := c.conn.ReadMessage()
+				var err error
+				for err == nil { // the page's access may come in between
+					_, _, err = c.conn.ReadMessage()
+				}
 				if !websocket.IsCloseError(err, test.code) {
 					t.Errorf("ended with %v, want code %d", err, test.code)
 				}
 			})
 		})
+	}
+}
+
+func TestCommandsOfAPage(t *testing.T) {
+	inBubble(t, func(t *testing.T, f *feed, h *Hub, l *pipeListener) {
+		a, b := l.dial(t), l.dial(t)
+		defer a.conn.Close()
+		defer b.conn.Close()
+		if m := string(a.next("access")); m != `{"type":"access","control":true}` {
+			t.Error(m)
+		}
+		b.next("access")
+		a.ask(`{"type":"note","text":"hatch open"}`)
+		if got, want := <-h.Commands(), (Command{Kind: Note, Text: "hatch open"}); got != want {
+			t.Errorf("%+v, want %+v", got, want)
+		}
+		b.next("asked") // every page sees what was done
+		late := l.dial(t)
+		defer late.conn.Close()
+		late.next("access")
+		a.ask(`{"type":"pause"}`)
+		if m := string(late.next("asked")); !strings.Contains(m, `"pause"`) { // but one that comes later not what was done before
+			t.Error(m)
+		}
+		a.ask(`{"type":"resume"}`)
+		if m := string(a.next("refused")); m != `{"type":"refused","text":"The average is not paused."}` {
+			t.Error(m)
+		}
+		a.ask(`{"type":"note","text":"` + strings.Repeat("x", maxNote+1) + `"}`)
+		a.next("refused") // and the page stays connected
+		a.ask(`{"type":"alive"}`)
+		a.next("alive")
+
+		h.PublishEvent(watch.Event{Edge: watch.Raised, Kind: "dead-channel", Channels: []string{"S1"}})
+		if m := string(b.next("marks")); !strings.Contains(m, `"dead-channel"`) {
+			t.Error(m)
+		}
+		a.ask(`{"type":"acknowledge","event":1}`)
+		if m := string(b.next("acknowledged")); m != `{"type":"acknowledged","events":[1]}` {
+			t.Error(m)
+		}
+		h.PublishLevels(f.levels(1, 0))
+		b.next("held")
+		a.ask(`{"type":"reset-peaks","channel":0}`)
+		if m := string(b.next("held")); !strings.HasPrefix(m, `{"type":"held","peak":[null,0.`) {
+			t.Error(m)
+		}
+	})
+}
+
+// A page that may only look sees all and moves nothing.
+func TestAPageThatMayOnlyLook(t *testing.T) {
+	f := newFeed(t, 1, 1, 101)
+	for _, ask := range []string{
+		`{"type":"pause"}`, `{"type":"resume"}`, `{"type":"start-over"}`, `{"type":"note","text":"x"}`, `{"type":"finish"}`,
+		`{"type":"acknowledge","event":1}`, `{"type":"reset-peaks"}`, `{"type":"measure","stage":"low"}`,
+		`{"type":"break","fault":"detach","target":"S1"}`, `{"type":"mend","fault":"detach","target":"S1"}`,
+	} {
+		t.Run(ask, func(t *testing.T) {
+			h := NewHub(Run{Rig: f.rig, Kind: "demo", Faults: testFaults})
+			h.PublishEvent(watch.Event{})
+			h.PublishLevels(f.levels(1, 0))
+			b := newBrowser(h, nil, slog.New(slog.DiscardHandler))
+			b.mayControl = false
+			r, err := parseRequest([]byte(ask), h.shape)
+			if err != nil {
+				t.Fatal(err)
+			}
+			held := h.held.message.number
+			b.heed(r)
+			if b.refused != "This page may look, and no more." {
+				t.Errorf("refused with %q", b.refused)
+			}
+			if len(h.commands.queue) > 0 || h.finishing || len(h.acknowledged.numbers) > 0 || h.held.message.number != held {
+				t.Error("it was done all the same")
+			}
+			b.mayControl = true
+			b.refused = ""
+			b.heed(r)
+			if strings.Contains(b.refused, "may look") {
+				t.Errorf("a page that may is refused with %q", b.refused)
+			}
+		})
+	}
+	for _, ask := range []string{`{"type":"select"}`, `{"type":"events","after":0}`, `{"type":"alive"}`} {
+		r, err := parseRequest([]byte(ask), testShape)
+		if err != nil || r.controls() {
+			t.Errorf("%s is not for looking: %v", ask, err)
+		}
 	}
 }

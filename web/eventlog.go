@@ -21,17 +21,13 @@ type eventLog struct {
 // add numbers e, which happened at the given time on the wall, and keeps it.
 func (l *eventLog) add(e watch.Event, at time.Time) {
 	l.newest++
-	bands := make([][2]estimate.Number, len(e.BandsHz))
-	for i, band := range e.BandsHz {
-		bands[i] = [2]estimate.Number{estimate.Number(band[0]), estimate.Number(band[1])}
-	}
 	text, err := json.Marshal(struct {
 		Number int64 `json:"number"`
 		AtMs   int64 `json:"at_ms"` // wall clock, Unix milliseconds
 		watch.Event
 		TimeS   estimate.Number      `json:"time_s"`
 		BandsHz [][2]estimate.Number `json:"bands_hz"`
-	}{l.newest, at.UnixMilli(), e, estimate.Number(e.TimeS), bands})
+	}{l.newest, at.UnixMilli(), e, estimate.Number(e.TimeS), bands(e)})
 	if err != nil {
 		panic("web: an event has no JSON: " + err.Error()) // it holds nothing that could do that
 	}

@@ -32,8 +32,8 @@ type feed struct {
 // hostile is a name that would do harm if it ever became markup.
 const hostile = `<img src=x onerror=alert(1)>`
 
-// madeRig is a rig of q forces and p responses with spectra of the given number of lines, every force
-// with a driving point. The second response has a hostile name.
+// madeRig is a rig of q forces and p responses at points of their own with spectra of the given number of
+// lines, every force with a driving point. The second response has a hostile name.
 func madeRig(t testing.TB, q, p, lines int) *rig.Rig {
 	var text strings.Builder
 	const spacingHz = 0.625
@@ -48,6 +48,10 @@ func madeRig(t testing.TB, q, p, lines int) *rig.Rig {
 			name = hostile
 		}
 		fmt.Fprintf(&text, "[[response]]\nchannel = %d\nname = \"%s\"\npoint = \"%d\"\naxis = \"+z\"\nsensitivity = 0.01\n", q+o+1, name, o+1)
+	}
+	columns := max(7, int(math.Sqrt(3*float64(p))))
+	for o := range p {
+		fmt.Fprintf(&text, "[[point]]\nname = \"%d\"\nx = %g\ny = %g\nz = %g\n", o+1, 0.5*float64(o%columns), 0.8*float64(o/columns), 0.3*float64(o%3))
 	}
 	r, err := rig.Parse("made.toml", []byte(text.String()))
 	if err != nil {
@@ -79,7 +83,7 @@ func newFeed(t testing.TB, q, p, lines int) *feed {
 }
 
 func (f *feed) estimates() *estimate.Estimates {
-	return estimate.New(f.average.Shape(), f.points)
+	return estimate.New(f.average.Shape(), estimate.Method{Points: f.points})
 }
 
 // structure fills h: modes spread over the band, with the shapes of a string.

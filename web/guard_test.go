@@ -52,7 +52,7 @@ func TestOwnHost(t *testing.T) {
 }
 
 func TestGuardRefusesOtherNames(t *testing.T) {
-	s := NewServer(NewHub(madeRig(t, 1, 1, 101), "demo", true), nil)
+	s := NewServer(NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}), nil)
 	for host, want := range map[string]int{"localhost:8765": http.StatusOK, "evil.example:8765": http.StatusMisdirectedRequest} {
 		for _, path := range []string{"/", "/main.js"} {
 			r := httptest.NewRequest("GET", path, nil)
@@ -70,7 +70,7 @@ func TestGuardRefusesOtherNames(t *testing.T) {
 }
 
 func TestGuardSetsThePolicy(t *testing.T) {
-	s := NewServer(NewHub(madeRig(t, 1, 1, 101), "demo", true), nil)
+	s := NewServer(NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}), nil)
 	r := httptest.NewRequest("GET", "http://localhost/", nil)
 	w := httptest.NewRecorder()
 	s.http.Handler.ServeHTTP(w, r)

@@ -7,7 +7,7 @@ import (
 )
 
 // historySize is how many points of the convergence are kept.
-const historySize = 512
+const historySize = 128
 
 // A history is how the worst random error fell with the number of averages. Its memory does not
 // grow: when it is full, the larger error of every two neighbours stays.

@@ -33,7 +33,14 @@ type Hub struct {
 	ended     *string
 	events    eventLog
 	setup     setupDesk
-	wakes     map[chan struct{}]bool // one for each browser, each with room for one
+
+	standing     standing
+	markings     markings
+	held         held
+	acknowledged acknowledged
+	commands     commandDesk
+
+	wakes map[chan struct{}]bool // one for each browser, each with room for one
 }
 
 // numbered is the newest message of a kind and how many there were.
@@ -44,33 +51,51 @@ type numbered struct {
 
 func (n *numbered) set(text []byte) { n.text, n.number = text, n.number+1 }
 
-// NewHub makes the hub of a run on r, which it only reads. kind is the kind of source: "demo",
-// "soundcard", "pipe", or "recording" for a replay. saves tells whether the results will be saved
-// when the run ends.
-func NewHub(r *rig.Rig, kind string, saves bool) *Hub {
+// A Run is what a hub must know before anything is published.
+type Run struct {
+	Rig   *rig.Rig // only read
+	Kind  string   // of source: "demo", "soundcard", "pipe", or "recording" for a replay
+	Saves bool     // results will be saved when the run ends
+	Level float64  // probability of the confidence regions; 0 is estimate.DefaultLevel
+
+	// Fixed says that the blocks to be averaged are given, so that pages can't pause or start over.
+	Fixed bool
+
+	// Faults are what pages can break, of a simulated rig.
+	Faults []Fault
+}
+
+// NewHub makes the hub of a run.
+func NewHub(run Run) *Hub {
+	r := run.Rig
+	if run.Level == 0 {
+		run.Level = estimate.DefaultLevel
+	}
 	list := estimate.ReciprocityPairs(estimate.DrivingPoints(r))
-	q, p, l := len(r.Forces), len(r.Responses), r.Grid.Lines
+	target := estimate.NewTarget(r)
+	shown := plots(r, target, run.Level)
+	q, p := len(r.Forces), len(r.Responses)
 	h := &Hub{
-		description: mustMarshal(describe(r, kind, rand.Text(), saves, list)),
-		shape:       shape{lines: l, responses: p, forces: q, pairs: list, spacingHz: r.Grid.SpacingHz},
-		channels:    q + p,
-		finish:      make(chan struct{}),
-		now:         time.Now,
-		wakes:       make(map[chan struct{}]bool),
-		setup:       setupDesk{proceed: make(chan struct{}, 1)},
-	}
-	h.first = h.shape.whole(r.DrivingPoints())
-	h.results = results{
-		names: newNames(r, list),
-		curver: curver{
-			worst: make([]float64, l), tenth: make([]float64, l), worstOf: make([]int, l),
-			values: make([]float64, p), spectra: make([]float64, l*q),
+		description: mustMarshal(describe(run, rand.Text(), list)),
+		shape: shape{
+			lines: r.Grid.Lines, responses: p, forces: q, pairs: list, spacingHz: r.Grid.SpacingHz,
+			parts: partsOf(shown), response: max(r.DrivingPoints()[0], 0),
 		},
-		common: make(map[grid][]byte),
-		views:  make(map[view][]byte),
-		target: r.Target.RandomError,
+		channels: q + p,
+		finish:   make(chan struct{}),
+		now:      time.Now,
+		wakes:    make(map[chan struct{}]bool),
+		setup:    setupDesk{proceed: make(chan struct{}, 1)},
+		markings: newMarkings(p, estimate.NewTarget(r)),
+		held:     newHeld(q + p),
+		commands: newCommandDesk(run),
 	}
-	h.results.spectra = h.results.curver.spectra
+	h.first = h.shape.whole()
+	h.results.ready(newNames(r, list), h.shape, shown, target)
+	if r.Analysis.Excitation == "periodic" {
+		h.results.scatter = newScatter(h.shape)
+		h.results.curver.scatter = h.results.scatter
+	}
 	return h
 }
 
@@ -87,6 +112,11 @@ func (h *Hub) Refresh(st Status, e *estimate.Estimates) (spare *estimate.Estimat
 	}
 	spare = h.results.set(st, e)
 	h.mu.Lock()
+	h.commands.paused = st.Paused
+	if e != nil {
+		h.markings.judge(e)
+		h.markings.write(h.standing)
+	}
 	h.wake()
 	h.mu.Unlock()
 	return spare
@@ -107,6 +137,7 @@ func (h *Hub) PublishLevels(l Levels) {
 	text := levelsMessage(l)
 	h.mu.Lock()
 	h.levels.set(text)
+	h.held.take(l.Peak)
 	h.wake()
 	h.mu.Unlock()
 }
@@ -115,6 +146,9 @@ func (h *Hub) PublishLevels(l Levels) {
 func (h *Hub) PublishEvent(e watch.Event) {
 	h.mu.Lock()
 	h.events.add(e, h.now())
+	if h.standing.take(e) {
+		h.markings.write(h.standing)
+	}
 	h.wake()
 	h.mu.Unlock()
 }
@@ -155,11 +189,13 @@ func (h *Hub) wake() {
 	}
 }
 
-// join has wake told of all news from now on, until leave.
-func (h *Hub) join(wake chan struct{}) {
+// join has wake told of all news from now on, until leave. It returns the number of the newest command,
+// which is no news to a page that has only just come.
+func (h *Hub) join(wake chan struct{}) (asked int64) {
 	h.mu.Lock()
+	defer h.mu.Unlock()
 	h.wakes[wake] = true
-	h.mu.Unlock()
+	return h.commands.asked.number
 }
 
 func (h *Hub) leave(wake chan struct{}) {

@@ -7,4 +7,5 @@ const (
 	keyHost    = "host"
 	keyStage   = "stage"
 	keyTaken   = "taken"
+	keyAsked   = "asked"
 )

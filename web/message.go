@@ -10,9 +10,17 @@ import (
 // The messages to a page, by their "type":
 //
 //	describe  once, first: a description
-//	refresh   status, the view shown and its curves; curver.go names them, results.go adds the rest
+//	refresh   status, the view shown and its curves; the plots' files name them
+//	access    whether this page may have the run do anything; browser.go
 //	levels    the channel levels
+//	held      the highest peaks since they were reset; held.go
+//	marks     what stands against channels, and responses with little coherence; markings.go
 //	events    events behind those that the page has; eventlog.go
+//	acknowledged  the numbers of events that a person has seen; acknowledged.go
+//	asked     the newest command of any page; command.go
+//	broken    what is broken on a simulated rig; command.go
+//	refused   why something that this page asked is not done
+//	alive     in answer to the same
 //	setup     how far a setup check is, in place of refresh; setupmessage.go
 //	findings  of the setup check, so far
 //	run       whether the run is finishing or has ended
@@ -41,6 +49,15 @@ type description struct {
 	Target     target          `json:"target"`
 	Shown      int             `json:"shown"` // how many responses can be chosen at once
 	Plots      []plot          `json:"plots"`
+	Points     []point         `json:"points"` // where points of the structure are; can be none
+	Fixed      bool            `json:"fixed"`  // the blocks are given: no pausing, no starting over
+	Faults     []Fault         `json:"faults"` // what can be broken, of a simulated rig
+}
+
+// A point is a place of the structure.
+type point struct {
+	Name string     `json:"name"`
+	AtM  [3]float64 `json:"at_m"`
 }
 
 type channel struct {
@@ -59,15 +76,16 @@ type target struct {
 	LastHz      estimate.Number `json:"last_hz"`
 }
 
-func describe(r *rig.Rig, kind, run string, saves bool, pairs [][2]int) description {
+func describe(run Run, id string, pairs [][2]int) description {
+	r := run.Rig
 	t := estimate.NewTarget(r)
 	g, spacing := r.Grid, r.Grid.SpacingHz
 	return description{
 		Type:       "describe",
-		Run:        run,
+		Run:        id,
 		Title:      r.Title,
-		Kind:       kind,
-		Saves:      saves,
+		Kind:       run.Kind,
+		Saves:      run.Saves,
 		Channels:   channels(r),
 		Forces:     len(r.Forces),
 		Pairs:      pairs,
@@ -79,14 +97,17 @@ func describe(r *rig.Rig, kind, run string, saves bool, pairs [][2]int) descript
 		Overlap:    r.Analysis.Overlap,
 		Excitation: r.Analysis.Excitation,
 		Estimator:  r.Analysis.Estimator,
-		Settling:   estimate.SettlingAverages(len(r.Forces)),
+		Settling:   t.Settling,
 		Target: target{
 			RandomError: t.RandomError, Share: t.Share, DepthDB: t.DepthDB,
 			FirstHz: estimate.Number(float64(t.First) * spacing),
 			LastHz:  estimate.Number(float64(t.Last) * spacing),
 		},
-		Shown: maxShown,
-		Plots: plots(r, t),
+		Shown:  maxShown,
+		Plots:  plots(r, t, run.Level),
+		Points: points(r),
+		Fixed:  run.Fixed,
+		Faults: faults(run.Faults),
 	}
 }
 
@@ -97,6 +118,24 @@ func channels(r *rig.Rig) []channel {
 	}
 	for _, c := range r.Responses {
 		list = append(list, channel{c.Name, c.Point, c.Axis, "m/s²", "response"})
+	}
+	return list
+}
+
+func points(r *rig.Rig) []point {
+	list := []point{}
+	for _, p := range r.Points {
+		list = append(list, point{p.Name, [3]float64{p.X, p.Y, p.Z}})
+	}
+	return list
+}
+
+// faults is the list without nil slices.
+func faults(given []Fault) []Fault {
+	list := []Fault{}
+	for _, f := range given {
+		f.Targets = append([]string{}, f.Targets...)
+		list = append(list, f)
 	}
 	return list
 }
@@ -141,34 +180,6 @@ func (n names) frf(response, force int) string {
 	return n.responses[response] + "/" + n.forces[force]
 }
 
-// view is v as a page reads it, with the names of its curves.
-func (n names) view(v view) json.RawMessage {
-	g := v.grid()
-	shown := v.shown[:v.shownCount()]
-	curves := map[string][]string{
-		"response.size":   {n.frf(v.response, v.force)},
-		"coherence.shown": {},
-	}
-	for _, o := range shown {
-		curves["coherence.shown"] = append(curves["coherence.shown"], n.responses[o])
-	}
-	if len(n.pairs) > 0 {
-		a, b := n.forces[n.pairs[v.pair][0]], n.forces[n.pairs[v.pair][1]]
-		curves["reciprocity.ab"] = []string{"at " + a + " from " + b}
-		curves["reciprocity.ba"] = []string{"at " + b + " from " + a}
-	}
-	return mustMarshal(struct {
-		Response  int                 `json:"response"`
-		Force     int                 `json:"force"`
-		Pair      int                 `json:"pair"`
-		Coherence []int               `json:"coherence"`
-		First     int                 `json:"first"` // line
-		Last      int                 `json:"last"`  // line
-		Step      int                 `json:"step"`  // lines to a point, see grid
-		Names     map[string][]string `json:"names"`
-	}{v.response, v.force, v.pair, shown, g.first, g.last, g.step, curves})
-}
-
 // status is st as a page reads it.
 func (n names) status(st Status) json.RawMessage {
 	worst := ""
@@ -182,8 +193,11 @@ func (n names) status(st Status) json.RawMessage {
 		SetAside   int64            `json:"set_aside"`
 		Effective  estimate.Number  `json:"effective"`
 		Needed     estimate.Number  `json:"needed"`
+		NeededLow  estimate.Number  `json:"needed_low"`
+		NeededHigh estimate.Number  `json:"needed_high"`
 		ToGoS      estimate.Number  `json:"to_go_s"`
 		Verdict    estimate.Verdict `json:"verdict"`
+		Paused     bool             `json:"paused"`
 		Worst      string           `json:"worst"`       // frequency response; empty when unknown
 		WorstError estimate.Number  `json:"worst_error"` // its error
 		Gaps       int64            `json:"gaps"`
@@ -191,7 +205,7 @@ func (n names) status(st Status) json.RawMessage {
 		Overloads  int64            `json:"overloads"`
 	}{
 		estimate.Number(st.TimeS), st.Seen, st.Averaged, st.SetAside,
-		estimate.Number(st.EffectiveAverages), st.AveragesNeeded, st.TimeToGoS, st.Verdict,
+		estimate.Number(st.EffectiveAverages), st.AveragesNeeded, st.NeededLow, st.NeededHigh, st.TimeToGoS, st.Verdict, st.Paused,
 		worst, estimate.Number(st.worstError()), st.Gaps, st.Overranges, st.Overloads,
 	})
 }

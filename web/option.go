@@ -11,7 +11,8 @@ import (
 	"shakerwatch/estimate"
 )
 
-// option is the plot's option for ECharts as JSON. The page adds data, names, colours and type sizes.
+// option is the plot's option for ECharts as JSON. The page adds data, names, colours, and what goes by
+// the size of its type.
 func (p *plot) option(g rig.Grid, target estimate.Target) json.RawMessage {
 	line := charts.NewLine()
 	line.XAxisList, line.YAxisList = nil, nil
@@ -29,7 +30,7 @@ func (p *plot) option(g rig.Grid, target estimate.Target) json.RawMessage {
 		charts.WithAnimation(false),
 		charts.WithLegendOpts(opts.Legend{Show: opts.Bool(false)}), // the page has its own
 		charts.WithTooltipOpts(opts.Tooltip{Show: opts.Bool(true), Trigger: "axis"}),
-		charts.WithGridOpts(paneGrids(len(p.Panes))...),
+		charts.WithGridOpts(make([]opts.Grid, len(p.Panes))...),
 		charts.WithAxisPointerOpts(&opts.AxisPointer{Link: []opts.AxisPointerLink{{XAxisIndex: indices(len(p.Panes))}}}),
 	)
 	return p.complete(line.JSON())
@@ -41,7 +42,9 @@ func (p *plot) xAxis(i int, g rig.Grid) opts.XAxis {
 	x := opts.XAxis{GridIndex: i, AxisLabel: &label}
 	switch p.Axis {
 	case overFrequency:
-		label.Formatter = "{value} Hz"
+		if lowest {
+			x.Name = "Hz"
+		}
 		x.Type, x.Min, x.Max = "value", 0, float64(g.Lines-1)*g.SpacingHz
 	case overAverages:
 		// Doublings are equally far apart: then the error's law is a straight line.
@@ -53,10 +56,12 @@ func (p *plot) xAxis(i int, g rig.Grid) opts.XAxis {
 func (pn pane) yAxis(i int) opts.YAxis {
 	y := opts.YAxis{
 		GridIndex: i, Type: "value", Name: pn.Quantity, NameLocation: "end",
-		Min: pn.min, Max: pn.max, Scale: opts.Bool(true), SplitNumber: 4,
-		MinInterval: pn.step, MaxInterval: pn.step,
+		Scale: opts.Bool(true), SplitNumber: 4, MinInterval: pn.Tick, MaxInterval: pn.Tick,
 	}
-	if pn.logBase > 0 {
+	if pn.Ends != nil {
+		y.Min, y.Max = pn.Ends[0], pn.Ends[1]
+	}
+	if pn.LogBase > 0 {
 		y.Type = "log"
 	}
 	return y
@@ -70,7 +75,7 @@ const (
 )
 
 func (c curve) style(s *charts.SingleSeries) {
-	s.XAxisIndex, s.YAxisIndex = c.pane, c.pane
+	s.XAxisIndex, s.YAxisIndex = c.Pane, c.Pane
 	s.ShowSymbol, s.ConnectNulls = opts.Bool(false), opts.Bool(false)
 	s.LineStyle = &opts.LineStyle{Width: normalWidth, Type: string(c.Dash)}
 	switch c.Weight {
@@ -81,7 +86,7 @@ func (c curve) style(s *charts.SingleSeries) {
 	}
 	if c.Quiet {
 		s.LineStyle.Opacity = opts.Float(0)
-		s.Stack = "band"
+		s.Stack = fmt.Sprintf("band %d", c.Pane) // else the bands of all panes are one pile
 	}
 }
 
@@ -89,23 +94,12 @@ func (c curve) style(s *charts.SingleSeries) {
 func (p *plot) shadeUnjudged(line *charts.Line, topHz float64) {
 	shaded := map[int]bool{}
 	for i, c := range p.Curves {
-		if !shaded[c.pane] {
-			shaded[c.pane] = true
+		if !shaded[c.Pane] {
+			shaded[c.Pane] = true
 			line.MultiSeries[i].MarkAreas = &opts.MarkAreas{Data: []any{
 				[]any{map[string]any{"xAxis": 0}, map[string]any{"xAxis": topHz}},
 			}}
 		}
-	}
-}
-
-// paneGrids are where n panes stand in a chart: pixels, and shares of its height.
-func paneGrids(n int) []opts.Grid {
-	if n == 1 {
-		return []opts.Grid{{Left: "54", Right: "16", Top: "26", Bottom: "26"}}
-	}
-	return []opts.Grid{
-		{Left: "54", Right: "16", Top: "26", Bottom: "52%"},
-		{Left: "54", Right: "16", Top: "60%", Bottom: "26"},
 	}
 }
 
@@ -126,8 +120,8 @@ func (p *plot) complete(option map[string]any) json.RawMessage {
 	}{}
 	p.convert(&tree, option)
 	for i, pn := range p.Panes {
-		if pn.logBase > 0 {
-			tree.YAxis[i]["logBase"] = pn.logBase
+		if pn.LogBase > 0 {
+			tree.YAxis[i]["logBase"] = pn.LogBase
 		}
 		if p.Axis == overAverages {
 			tree.XAxis[i]["logBase"] = 2

@@ -65,13 +65,34 @@ func series(w *pagetest.Window, plot string, index int) [][2]*float64 {
 	return pagetest.Value[[][2]*float64](w, fmt.Sprintf(`echarts.getInstanceByDom(document.querySelector("#plot-%s .canvas")).getOption().series[%d].data`, plot, index))
 }
 
+const (
+	responsePicker  = "#choices .group:nth-child(1) .picker"
+	coherencePicker = "#choices .group:nth-child(2) .picker"
+)
+
+// choose takes the first of the responses that a list finds by some letters.
+func choose(w *pagetest.Window, picker, letters string) {
+	w.Click(picker + " button")
+	for _, key := range letters {
+		w.Press(string(key))
+	}
+	pressEnter(w)
+}
+
+// pressEnter is the key as a keyboard has it: when the page takes it, no character follows.
+func pressEnter(w *pagetest.Window) {
+	for _, kind := range []input.DispatchKeyEventType{input.DispatchKeyEventTypeRawKeyDown, input.DispatchKeyEventTypeKeyUp} {
+		pagetest.Command(w, input.DispatchKeyEvent, input.DispatchKeyEventParams{Type: kind, Key: "Enter", Code: "Enter", WindowsVirtualKeyCode: 13})
+	}
+}
+
 func drawn(plot string, number int) string {
 	return fmt.Sprintf(`document.querySelector("#plot-%s")?.dataset.number === "%d"`, plot, number)
 }
 
 func TestPageShowsARun(t *testing.T) {
 	f := newFeed(t, 2, 14, 1601)
-	h := NewHub(f.rig, "demo", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "demo", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 3)
 	w := pagetest.Open(t, address)
@@ -82,14 +103,14 @@ func TestPageShowsARun(t *testing.T) {
 
 	f.add(12)
 	f.refresh(h)
-	w.Until(drawn("coherence", 1))
+	w.Until(drawn("coherence", 1) + ` && ` + option("coherence", `series[0].data.length`) + ` < 600`) // as many points as the plot shows
 	first := series(w, "coherence", 0)
 	f.add(30)
 	f.refresh(h)
 	w.Until(drawn("coherence", 2))
 	second := series(w, "coherence", 0)
-	if len(first) != 801 || len(second) != 801 {
-		t.Fatalf("coherence has %d, then %d points, want 801: 1601 lines, two to a point", len(first), len(second))
+	if len(first) < leastPoints/2 || len(second) != len(first) {
+		t.Fatalf("coherence has %d, then %d points", len(first), len(second))
 	}
 	same := 0
 	for i := range first {
@@ -114,7 +135,7 @@ func TestPageShowsARun(t *testing.T) {
 		}
 	}
 	w.Screen(1280, 2000, "light")
-	for _, plot := range []string{"coherence", "independence", "response", "forces", "reciprocity", "convergence"} {
+	for _, plot := range []string{"coherence", "independence", "response", "forces", "reciprocity", "convergence", "map"} {
 		w.Until(drawn(plot, 2))
 	}
 	w.Picture("whole")
@@ -127,7 +148,7 @@ func TestPageHostileNames(t *testing.T) {
 	f.rig.Title = hostile
 	f.rig.Forces[0].Name = hostile + "1"
 	f.rig.Responses[0].Name = hostile + "2"
-	h := NewHub(f.rig, hostile, true)
+	h := NewHub(Run{Rig: f.rig, Kind: hostile, Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 1)
 	w := pagetest.Open(t, address)
@@ -135,7 +156,7 @@ func TestPageHostileNames(t *testing.T) {
 	f.add(12)
 	f.refresh(h)
 	w.Until(drawn("coherence", 1))
-	w.Choose("#choices .group:nth-child(2) select", "1")
+	choose(w, coherencePicker, "<img")
 	w.Until(`document.querySelector(".chip")?.textContent.includes("<img src=x")`)
 	w.Until(`document.querySelector("#events .what")?.textContent.includes("<img src=x")`)
 	w.Mouse(input.DispatchMouseEventTypeMouseMoved, "coherence", 0.5, 0.5)
@@ -151,7 +172,7 @@ func TestPageHostileNames(t *testing.T) {
 
 func TestPageReadsValuesInAllPlots(t *testing.T) {
 	f := newFeed(t, 2, 5, 801)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -160,20 +181,20 @@ func TestPageReadsValuesInAllPlots(t *testing.T) {
 	f.refresh(h)
 	w.Until(drawn("response", 1))
 	w.Mouse(input.DispatchMouseEventTypeMouseMoved, "response", 0.5, 0.3)
-	w.Until(`document.querySelector("#plot-response .readout")?.textContent.includes("standard deviation")`)
-	w.Until(`document.querySelectorAll(".canvas.marked").length === 4`)
+	w.Until(`document.querySelector("#plot-response .readout")?.textContent.includes("90 % confidence")`)
+	w.Until(`document.querySelectorAll(".canvas.marked").length === 5`)
 	w.Picture("readout")
 
 	w.Focus("#plot-coherence .canvas")
 	w.Press(kb.ArrowRight)
 	w.Press(kb.ArrowRight)
-	w.Until(`document.querySelector("#plot-coherence .readout b")?.textContent === "1.25 Hz"`)
+	w.Until(`document.querySelector("#plot-coherence .readout b")?.textContent === "2.5 to 3.125 Hz"`)
 	w.Clean(address)
 }
 
 func TestPageBand(t *testing.T) {
 	f := newFeed(t, 2, 5, 1601)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -184,20 +205,20 @@ func TestPageBand(t *testing.T) {
 	w.Mouse(input.DispatchMouseEventTypeMouseMoved, "coherence", 0.6, 0.5)
 	w.Picture("drag")
 	w.Mouse(input.DispatchMouseEventTypeMouseReleased, "coherence", 0.6, 0.5)
-	w.Until(`echarts.getInstanceByDom(document.querySelector("#plot-coherence .canvas")).getOption().series[0].data.length < 700`)
+	w.Until(`echarts.getInstanceByDom(document.querySelector("#plot-coherence .canvas")).getOption().xAxis[0].min > 200`)
 	data := series(w, "coherence", 0)
 	step := *data[1][0] - *data[0][0]
 	if first, last := *data[0][0], *data[len(data)-1][0]; first < 300 || last > 700 || last < first+100 || step != 0.625 {
 		t.Errorf("after dragging the band is %g to %g Hz in steps of %g Hz, want some 370 to 580 Hz, every line", first, last, step)
 	}
 	w.Click("#choices button.whole")
-	w.Until(`echarts.getInstanceByDom(document.querySelector("#plot-coherence .canvas")).getOption().series[0].data.length === 801`)
+	w.Until(`echarts.getInstanceByDom(document.querySelector("#plot-coherence .canvas")).getOption().xAxis[0].min === 0`)
 	w.Clean(address)
 }
 
 func TestPageStaysAfterTheEnd(t *testing.T) {
 	f := newFeed(t, 2, 5, 401)
-	h := NewHub(f.rig, "recording", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "recording", Saves: true})
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -210,7 +231,7 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 	w.Picture("finish")
 	w.Press(kb.Enter) // what has the focus is to stay
 	w.Until(`!document.getElementById("ask").open`)
-	w.Choose("#choices select", "2") // by the answer all that was asked before has come
+	choose(w, responsePicker, "A3z") // by the answer all that was asked before has come
 	w.Until(`document.querySelector("#plot-response .curves").textContent.includes("A3z/S1")`)
 	select {
 	case <-h.Finish():
@@ -225,10 +246,10 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 	h.Ended("Results were written to out.")
 	w.Until(`document.getElementById("ended").textContent === "Run ended. Results were written to out."`)
 
-	before := series(w, "response", 2)
-	w.Choose("#choices select", "3")
+	before := series(w, "response", 4)
+	choose(w, responsePicker, "A4z")
 	w.Until(`document.querySelector("#plot-response .curves").textContent.includes("A4z/S1")`)
-	after := series(w, "response", 2)
+	after := series(w, "response", 4)
 	if *before[100][1] == *after[100][1] {
 		t.Error("another frequency response was chosen after the end, and the same is shown")
 	}
@@ -243,7 +264,7 @@ func TestPageStaysAfterTheEnd(t *testing.T) {
 
 func TestPageSaysThatDataAreOld(t *testing.T) {
 	f := newFeed(t, 2, 5, 401)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)
@@ -262,7 +283,7 @@ func TestPageSaysThatDataAreOld(t *testing.T) {
 
 func TestPageManyResponses(t *testing.T) {
 	f := newFeed(t, 8, 504, 101)
-	h := NewHub(f.rig, "pipe", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "pipe", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 9)
 	w := pagetest.Open(t, address)
@@ -277,7 +298,7 @@ func TestPageManyResponses(t *testing.T) {
 
 func TestPageSaysThatNothingWillBeSaved(t *testing.T) {
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "soundcard", false)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: false})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w := pagetest.Open(t, address)

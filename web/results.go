@@ -1,8 +1,10 @@
 package web
 
 import (
+	"bytes"
 	"encoding/json"
 	"math"
+	"slices"
 	"strconv"
 	"sync"
 	"sync/atomic"
@@ -16,6 +18,8 @@ import (
 // All methods may be called from several goroutines.
 type results struct {
 	names names
+	shape shape
+	plots []plot
 
 	number atomic.Int64 // of the newest refresh, 0 without
 
@@ -23,7 +27,7 @@ type results struct {
 	making sync.Mutex
 	made   int64 // the refresh of which all below is
 	curver curver
-	common map[grid][]byte // curves that all views with that grid share
+	common map[sharedPart][]byte
 	views  map[view][]byte // whole messages
 	size   int             // of the last message made, for the next one's memory
 
@@ -33,9 +37,28 @@ type results struct {
 	status  []byte
 	e       *estimate.Estimates // nil without
 	spectra []float64           // (L,q) diagonal of Gxx, N²/Hz
+	errors  []float64           // (p) of each response's frequency response that is furthest from the target
+	scatter *scatter            // nil but with periodic excitation
 	history history
 	ahead   []historyPoint // projection
 	target  float64        // relative standard deviation of |H|
+}
+
+// A sharedPart is what all views with that span show of a plot.
+type sharedPart struct {
+	span
+	plot int // index
+}
+
+// ready fits r, which is new, out for a run with the given plots.
+func (r *results) ready(n names, s shape, plots []plot, target estimate.Target) {
+	r.names, r.shape, r.plots, r.target = n, s, plots, target.RandomError
+	r.common, r.views = make(map[sharedPart][]byte), make(map[view][]byte)
+	r.spectra, r.errors = make([]float64, s.lines*s.forces), make([]float64, s.responses)
+	r.curver = curver{
+		worst: make([]float64, s.lines), tenth: make([]float64, s.lines), worstOf: make([]int, s.lines),
+		values: make([]float64, s.responses), spectra: r.spectra, errors: r.errors,
+	}
 }
 
 // set makes st and e the newest and returns the estimates that it no longer holds. With e nil the
@@ -47,6 +70,8 @@ func (r *results) set(st Status, e *estimate.Estimates) (spare *estimate.Estimat
 	r.status = text
 	if e != nil {
 		r.keepSpectra(st.Gxx, e)
+		r.keepErrors(st.Progress, e.Forces)
+		r.scatter.keep(st)
 		r.history.add(e.Averages, st.worstError())
 		r.ahead = r.history.projection(r.ahead[:0], e.EffectiveAverages, e.Forces, st.AveragesNeeded)
 		r.e, spare = e, r.e
@@ -67,6 +92,17 @@ func (r *results) keepSpectra(gxx []complex128, e *estimate.Estimates) {
 			line, i := n/q, n%q
 			r.spectra[n] = real(gxx[(line*q+i)*q+i])
 		}
+	}
+}
+
+// keepErrors copies each response's largest error; an unknown one is larger than any.
+func (r *results) keepErrors(p *estimate.Progress, q int) {
+	for o := range r.errors {
+		r.errors[o] = math.NaN()
+		if p == nil {
+			continue
+		}
+		r.errors[o] = slices.Max(p.Errors[o*q : (o+1)*q]) // NaN where there is one
 	}
 }
 
@@ -101,48 +137,68 @@ func (r *results) startOver(number int64) {
 	clear(r.common)
 	clear(r.views)
 	if r.e != nil {
-		r.curver.e = r.e
-		r.curver.spread()
+		r.curver.take(r.e)
 	}
 }
 
 // make writes the message of one view.
 func (r *results) make(v view, number int64) []byte {
-	g := v.grid()
+	g := newGrid(v.span())
 	text := make([]byte, 0, r.size+r.size/16)
 	text = append(text, `{"type":"refresh","number":`...)
 	text = strconv.AppendInt(text, number, 10)
 	text = append(append(text, `,"status":`...), r.status...)
-	text = append(append(text, `,"view":`...), r.names.view(v)...)
-	text = append(append(text, `,"curves":{`...), r.convergence(nil)...)
-	if r.e == nil {
-		return append(text, `}}`...)
+	text = append(append(text, `,"view":`...), r.names.view(v, g, r.shape)...)
+	text = append(text, `,"curves":{`...)
+	for i := range r.shape.parts {
+		if v.has(i) {
+			text = r.part(text, i, v, g)
+		}
 	}
-	common, ok := r.common[g]
-	if !ok {
-		common = r.curver.common(make([]byte, 0, r.size), g)
-		r.common[g] = common
-	}
-	text = append(append(text, ','), common...)
-	text = r.curver.chosen(text, v)
 	r.size = len(text)
-	return append(text[:len(text)-1], `}}`...) // every curve leaves a comma behind
+	return append(bytes.TrimSuffix(text, []byte(",")), `}}`...) // every curve leaves a comma behind
 }
 
-// convergence writes the curves over averages, as pairs of numbers.
+// part writes one of the shape's parts.
+func (r *results) part(text []byte, part int, v view, g grid) []byte {
+	switch name := r.shape.parts[part]; {
+	case name == "convergence":
+		return r.convergence(text)
+	case r.e == nil:
+		return text
+	case name == ranking:
+		return r.curver.ranking(text)
+	}
+	p := r.plots[part]
+	if p.common != nil {
+		key := sharedPart{g.span, part}
+		shared, ok := r.common[key]
+		if !ok {
+			shared = p.common(&r.curver, nil, g)
+			r.common[key] = shared
+		}
+		text = append(text, shared...)
+	}
+	if p.chosen != nil {
+		text = p.chosen(&r.curver, text, g, v)
+	}
+	return text
+}
+
+// convergence writes the curves over averages, as pairs of numbers, with a comma behind.
 func (r *results) convergence(dst []byte) []byte {
 	points := r.history.points
 	dst = appendPoints(append(dst, `"convergence.error":`...), points)
 	dst = appendPoints(append(dst, `,"convergence.projection":`...), r.ahead)
 	dst = append(dst, `,"convergence.target":`...)
 	if len(points) == 0 {
-		return append(dst, `[]`...)
+		return append(dst, `[],`...)
 	}
 	ends := []historyPoint{{points[0].averages, r.target}, {points[len(points)-1].averages, r.target}}
 	if len(r.ahead) > 0 {
 		ends[1].averages = r.ahead[len(r.ahead)-1].averages
 	}
-	return appendPoints(dst, ends)
+	return append(appendPoints(dst, ends), ',')
 }
 
 // appendPoints appends points as [averages, error in %].

@@ -32,6 +32,8 @@ type Server struct {
 	http     *http.Server
 	upgrader websocket.Upgrader // its default check of the origin is kept: same host only
 
+	mayControl func(*http.Request) bool // tells whether that page may do more than look
+
 	mu       sync.Mutex // guards what follows
 	closing  bool
 	entered  int // pages that are connected or about to be
@@ -44,7 +46,10 @@ func NewServer(h *Hub, logger *slog.Logger) *Server {
 	if logger == nil {
 		logger = slog.New(slog.DiscardHandler)
 	}
-	s := &Server{hub: h, logger: logger, page: static.Page(), browsers: make(map[*browser]bool)}
+	s := &Server{
+		hub: h, logger: logger, page: static.Page(), browsers: make(map[*browser]bool),
+		mayControl: func(*http.Request) bool { return true },
+	}
 	s.http = &http.Server{
 		Handler:           s.guard(s.routes()),
 		ReadHeaderTimeout: headerWait,
@@ -132,6 +137,7 @@ func (s *Server) live(w http.ResponseWriter, r *http.Request) {
 	}
 	logger := s.logger.With(keyBrowser, r.RemoteAddr)
 	b := newBrowser(s.hub, conn, logger)
+	b.mayControl = s.mayControl(r)
 	if !s.add(b) {
 		b.goodbye()
 		conn.Close()

@@ -20,7 +20,7 @@ import (
 )
 
 func TestWhatIsServedIsWhatIsEmbedded(t *testing.T) {
-	address, _ := serve(t, NewHub(madeRig(t, 1, 1, 101), "demo", true))
+	address, _ := serve(t, NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}))
 	client := &http.Client{Transport: &http.Transport{DisableKeepAlives: true}}
 	get := func(name string) (*http.Response, []byte) {
 		response, err := client.Get(address + name)
@@ -73,7 +73,7 @@ func TestWhatIsServedIsWhatIsEmbedded(t *testing.T) {
 }
 
 func TestServeNeedsTheChartLibrary(t *testing.T) {
-	s := NewServer(NewHub(madeRig(t, 1, 1, 101), "demo", true), nil)
+	s := NewServer(NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}), nil)
 	s.page = fstest.MapFS{"index.html": {}}
 	l, err := net.Listen("tcp", "127.0.0.1:0")
 	if err != nil {
@@ -89,7 +89,7 @@ func TestServeNeedsTheChartLibrary(t *testing.T) {
 }
 
 func TestOnlyTheOwnPageMayConnect(t *testing.T) {
-	address, _ := serve(t, NewHub(madeRig(t, 1, 1, 101), "demo", true))
+	address, _ := serve(t, NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}))
 	host := strings.TrimSuffix(strings.TrimPrefix(address, "http://"), "/")
 	tests := []struct {
 		name   string
@@ -117,7 +117,7 @@ func TestOnlyTheOwnPageMayConnect(t *testing.T) {
 }
 
 func TestTooManyPagesAreTurnedAway(t *testing.T) {
-	address, stop := serve(t, NewHub(madeRig(t, 1, 1, 101), "demo", true))
+	address, stop := serve(t, NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}))
 	host := strings.TrimPrefix(address, "http://")
 	for i := range maxBrowsers {
 		conn, _, err := websocket.DefaultDialer.Dial("ws://"+host+"live", nil)
@@ -168,7 +168,7 @@ func ownStacks() string {
 }
 
 func TestCloseBeforeServe(t *testing.T) {
-	s := NewServer(NewHub(madeRig(t, 1, 1, 101), "demo", true), nil)
+	s := NewServer(NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}), nil)
 	if err := s.Close(); err != nil {
 		t.Error(err)
 	}

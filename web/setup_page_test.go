@@ -101,8 +101,9 @@ func everyScreen(w *pagetest.Window, name string) {
 }
 
 func TestPageLeadsThroughTheSetupCheck(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 2, 14, 401)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -168,8 +169,9 @@ func TestPageLeadsThroughTheSetupCheck(t *testing.T) {
 
 // By keys alone; and a key that is held down, or pressed twice, does not answer the next instruction.
 func TestSetupCheckByKeys(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -212,8 +214,9 @@ func TestSetupCheckByKeys(t *testing.T) {
 
 // A page that lost the program, or shows old data, starts nothing.
 func TestSetupCheckSaysThatDataAreOld(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "soundcard", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "soundcard", Saves: true})
 	address, stop := serve(t, h)
 	fresh := f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -232,8 +235,9 @@ func TestSetupCheckSaysThatDataAreOld(t *testing.T) {
 
 // Without a bad finding, what was not measured still keeps it from being in order.
 func TestSetupCheckIsNotInOrderWithoutAllStages(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, "demo", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "demo", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -251,8 +255,9 @@ func TestSetupCheckIsNotInOrderWithoutAllStages(t *testing.T) {
 }
 
 func TestSetupCheckCanEndEarly(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 1, 2, 101)
-	h := NewHub(f.rig, hostile, true)
+	h := NewHub(Run{Rig: f.rig, Kind: hostile, Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, -1)
 	w, check := pagetest.Open(t, address), &walk{h: h}
@@ -280,8 +285,9 @@ func TestSetupCheckCanEndEarly(t *testing.T) {
 
 // 512 channels with ten findings each.
 func TestSetupCheckOfManyChannels(t *testing.T) {
+	t.Parallel()
 	f := newFeed(t, 8, 504, 101)
-	h := NewHub(f.rig, "pipe", true)
+	h := NewHub(Run{Rig: f.rig, Kind: "pipe", Saves: true})
 	address, _ := serve(t, h)
 	f.keepFresh(t, h, 9)
 	w, check := pagetest.Open(t, address), &walk{h: h}

@@ -197,7 +197,7 @@ func TestMeasureIsTakenOnceAndOnlyForTheStageWaitedFor(t *testing.T) {
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
-			h := NewHub(madeRig(t, 1, 1, 101), "demo", true)
+			h := NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true})
 			test.play(h)
 			if got := h.proceeds(); got != test.want {
 				t.Errorf("%d values, want %d", got, test.want)
@@ -241,7 +241,7 @@ func TestPagesSeeTheSetupCheck(t *testing.T) {
 
 // Progress comes many times and the findings may be thousands: they are sent when they change.
 func TestFindingsAreSentOnce(t *testing.T) {
-	h := NewHub(madeRig(t, 1, 1, 101), "demo", true)
+	h := NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true})
 	s := SetupState{Findings: []setup.Finding{{Text: "one"}}}
 	var page sent
 	var kinds []string
@@ -265,7 +265,7 @@ func TestPublishSetupWaitsForNobody(t *testing.T) {
 	inBubble(t, func(t *testing.T, f *feed, h *Hub, l *pipeListener) {
 		stuck := l.dial(t)
 		defer stuck.conn.Close()
-		stuck.next("describe")
+		stuck.next("access")
 		for n := range 100 {
 			h.PublishSetup(SetupState{Stage: setup.Low, Part: float64(n) / 100, Findings: []setup.Finding{{Text: fmt.Sprint(n, strings.Repeat("x", 1<<16))}}})
 			synctest.Wait()
@@ -307,7 +307,7 @@ func TestPublishSetupPanicsWithWhatDoesNotExist(t *testing.T) {
 					t.Errorf("panic %q", got)
 				}
 			}()
-			NewHub(madeRig(t, 1, 1, 101), "demo", true).PublishSetup(s)
+			NewHub(Run{Rig: madeRig(t, 1, 1, 101), Kind: "demo", Saves: true}).PublishSetup(s)
 		})
 	}
 }

@@ -15,8 +15,11 @@ type Status struct {
 
 	EffectiveAverages float64
 	AveragesNeeded    estimate.Number // predicted total of averaged blocks, NaN when unknown
+	NeededLow         estimate.Number // of the range that it lies in with a probability of 90 %; NaN when unknown
+	NeededHigh        estimate.Number
 	TimeToGoS         estimate.Number // until then, NaN when unknown
 	Verdict           estimate.Verdict
+	Paused            bool // a page asked for it: blocks are judged but not averaged
 
 	// Progress is that of the estimates. It is read during the call that brings it and not kept;
 	// with nil the worst frequency response and its error are unknown.
@@ -25,6 +28,11 @@ type Status struct {
 	// Gxx (line, i, j), N²/Hz, is that of the estimates' snapshot. It is read during the call that
 	// brings it and not kept; with nil the force spectra are unknown.
 	Gxx []complex128
+
+	// Gyy (line, o), (m/s²)²/Hz, is that of the estimates' snapshot, Distortion that of the estimates, nil
+	// but with periodic excitation. They are read during the call that brings them and not kept.
+	Gyy        []float64
+	Distortion *estimate.Distortion
 
 	Gaps       int64 // stretches of lost frames
 	Overranges int64 // blocks in which a channel reached its limit

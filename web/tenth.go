@@ -2,25 +2,25 @@ package web
 
 import "math"
 
-// worstAndTenth are the smallest and the tenth percentile of the values that are known, the latter
-// being the smallest that at least a tenth of them do not exceed; both are NaN when none is known. It
-// reorders values.
-func worstAndTenth(values []float64) (worst, tenth float64) {
-	known := values[:0]
+// worstAndTenth are the smallest of the values that are known, where it stands, and their tenth percentile,
+// the smallest that at least a tenth of them do not exceed; both are NaN when none is known. scratch has
+// room for all values.
+func worstAndTenth(values, scratch []float64) (worst float64, at int, tenth float64) {
+	known := scratch[:0]
 	worst = math.NaN()
-	for _, v := range values {
-		if math.IsNaN(v) {
+	for i, v := range values {
+		if v != v {
 			continue
 		}
 		known = append(known, v)
 		if !(v >= worst) {
-			worst = v
+			worst, at = v, i
 		}
 	}
 	if len(known) == 0 {
-		return worst, math.NaN()
+		return worst, at, math.NaN()
 	}
-	return worst, smallest(known, (len(known)+9)/10-1)
+	return worst, at, smallest(known, (len(known)+9)/10-1)
 }
 
 // smallest is the value that would stand at index n if values were sorted. There is no NaN among

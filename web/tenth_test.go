@@ -33,9 +33,12 @@ func TestWorstAndTenth(t *testing.T) {
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
-			worst, tenth := worstAndTenth(slices.Clone(test.values))
+			worst, at, tenth := worstAndTenth(test.values, make([]float64, len(test.values)))
 			if !same(worst, test.worst) || !same(tenth, test.tenth) {
 				t.Errorf("%g and %g, want %g and %g", worst, tenth, test.worst, test.tenth)
+			}
+			if !math.IsNaN(worst) && test.values[at] != worst {
+				t.Errorf("the worst is said to stand at %d, where %g is", at, test.values[at])
 			}
 		})
 	}

@@ -14,32 +14,66 @@ func column(values []float64) func(int) float64 {
 
 func TestGridSpreadsLines(t *testing.T) {
 	tests := []struct {
-		name        string
-		first, last int
-		step        int
-		points      int
+		name string
+		span span
+		runs [][2]int
 	}{
-		{"one line", 3, 3, 1, 1},
-		{"as many lines as points", 0, maxPoints - 1, 1, maxPoints},
-		{"one more", 0, maxPoints, 2, maxPoints/2 + 1},
-		{"the demo's lines", 0, 1600, 2, 801},
-		{"a band of them", 300, 1299, 1, 1000},
-		{"very many", 0, 100_000, 101, 991},
+		{"one line", span{3, 3, 1000, false}, [][2]int{{1, 1}}},
+		{"as many lines as points", span{0, 999, 1000, false}, [][2]int{{1000, 1}}},
+		{"one more", span{0, 1000, 1000, false}, [][2]int{{500, 2}, {1, 1}}},
+		{"the demo's lines", span{0, 1600, 1000, false}, [][2]int{{800, 2}, {1, 1}}},
+		{"the same on a small plot", span{0, 1600, 400, false}, [][2]int{{320, 5}, {1, 1}}},
+		{"a band of them", span{300, 1299, 1000, false}, [][2]int{{1000, 1}}},
+		{"very many", span{0, 100_000, 1000, false}, [][2]int{{990, 101}, {1, 11}}},
+		{"by ratio, wide enough for each line", span{1, 6, 1000, true}, [][2]int{{6, 1}}},
+		// Three octaves over six points: each edge is at least a root of two above the last, rounded up.
+		{"by ratio", span{16, 127, 6, true}, [][2]int{{1, 7}, {1, 10}, {1, 14}, {1, 20}, {1, 28}, {1, 33}}},
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {
-			g := newGrid(test.first, test.last)
-			if g.step != test.step || g.points() != test.points {
-				t.Errorf("step %d, %d points; want %d, %d", g.step, g.points(), test.step, test.points)
+			if got := newGrid(test.span).runs(); !slices.Equal(got, test.runs) {
+				t.Errorf("points and lines %v, want %v", got, test.runs)
 			}
 		})
 	}
 }
 
+// drawSpan draws any span within so many lines.
+func drawSpan(t *rapid.T, lines int) span {
+	log := lines > 1 && rapid.Bool().Draw(t, "log")
+	first := rapid.IntRange(0, lines-1).Draw(t, "first")
+	if log {
+		first = max(first, 1)
+	}
+	return span{first, rapid.IntRange(first, lines-1).Draw(t, "last"), rapid.IntRange(1, 200).Draw(t, "points"), log}
+}
+
+// Every line belongs to exactly one point, and there are never more points than asked for.
+func TestGridLosesNoLine(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		s := drawSpan(t, rapid.IntRange(1, 5000).Draw(t, "lines"))
+		g := newGrid(s)
+		if g.points() > s.most {
+			t.Fatalf("%d points of at most %d", g.points(), s.most)
+		}
+		next := s.first
+		for i := range g.points() {
+			lo, hi := g.lines(i, 1)
+			if lo != next || hi <= lo {
+				t.Fatalf("point %d has lines %d to %d, line %d is next", i, lo, hi-1, next)
+			}
+			next = hi
+		}
+		if next != s.last+1 {
+			t.Fatalf("the points end before line %d, the last is %d", next, s.last)
+		}
+	})
+}
+
 func TestThinningTakesExtremesNotEveryNthLine(t *testing.T) {
 	nan := math.NaN()
 	values := []float64{5, 1, 7, nan, nan, nan, 4, 4, nan, 9}
-	g := grid{first: 0, last: 9, step: 3}
+	g := newGrid(span{first: 0, last: 9, most: 4})
 	tests := []struct {
 		name string
 		pick pick
@@ -59,7 +93,7 @@ func TestThinningTakesExtremesNotEveryNthLine(t *testing.T) {
 }
 
 func TestExtremesKeepEveryLineWhereNothingIsThinned(t *testing.T) {
-	g := grid{first: 2, last: 6, step: 1}
+	g := newGrid(span{first: 2, last: 6, most: 5})
 	got := g.extremes(nil, column([]float64{0, 0, 3, math.NaN(), 1, 2, 9}))
 	if want := []int{2, 3, 4, 5, 6}; !slices.Equal(got, want) {
 		t.Errorf("lines %v, want %v", got, want)
@@ -76,12 +110,10 @@ func TestThinningLosesNoExtreme(t *testing.T) {
 			}
 			return rapid.Float64Range(-1e6, 1e6).Draw(t, "value")
 		}), 1, 300).Draw(t, "values")
-		first := rapid.IntRange(0, len(values)-1).Draw(t, "first")
-		last := rapid.IntRange(first, len(values)-1).Draw(t, "last")
-		g := grid{first, last, rapid.IntRange(1, 40).Draw(t, "step")}
+		g := newGrid(drawSpan(t, len(values)))
 
 		smallest, largest := math.NaN(), math.NaN()
-		for _, v := range values[first : last+1] {
+		for _, v := range values[g.first : g.last+1] {
 			if math.IsNaN(v) {
 				continue
 			}
@@ -115,7 +147,8 @@ func TestThinningLosesNoExtreme(t *testing.T) {
 		check("lowest", g.lowest(nil, column(values)), 1, true, false)
 		check("highest", g.highest(nil, column(values)), 1, false, true)
 		// Half a pair at the end has room for the smallest value only.
-		whole := g.step == 1 || g.points()%2 == 0
+		lo, hi := g.lines(g.points()-1, 1)
+		whole := hi-lo == 1 || g.points()%2 == 0
 		check("extremes", g.extremes(nil, column(values)), 2, true, whole)
 	})
 }

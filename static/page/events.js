@@ -1,19 +1,34 @@
-// The list of events, newest first.
+// The list of events, newest first, with what people did among them.
 
-import { make, put } from "./format.js";
+import { item } from "./event.js";
+import { put } from "./format.js";
+import { ofPeople } from "./kinds.js";
 
 const mostShown = 200; // the file of events has them all
 
 const list = document.getElementById("events");
 const count = document.getElementById("event-count");
+const seenAll = document.getElementById("seen-all");
 
 let newest = 0;
-let dropped = 0;
-let showBand = () => {};
+let kept = []; // { event, element }, newest first
+let seen = new Set(); // numbers that were acknowledged
+let may = false;
+let doing = { showBand: () => {}, acknowledge: () => {} };
+let changed = () => {};
 
-// build sets what happens when an event's band is asked for: show(fromHz, toHz).
-export function build(show) {
-  showBand = show;
+// build sets what an event's buttons do, showBand(fromHz, toHz) and acknowledge(number, before), and who is told
+// of a change.
+export function build(does, tell) {
+  doing = does;
+  changed = tell;
+  seenAll.onclick = () => doing.acknowledge(newest, true);
+}
+
+// control says whether this page may acknowledge.
+export function control(allowed) {
+  may = allowed;
+  drawSeen();
 }
 
 // last is the number of the newest event that is here.
@@ -21,40 +36,55 @@ export function last() {
   return newest;
 }
 
+// newestEvent is the newest event, or null.
+export function newestEvent() {
+  return kept[0]?.event ?? null;
+}
+
+// open are the events that are to be acknowledged, newest first.
+export function open() {
+  return kept.map(({ event }) => event).filter(isOpen);
+}
+
 // add takes a message with events.
 export function add(message) {
   for (const event of message.events) {
     if (event.number > newest) {
       newest = event.number;
-      list.prepend(item(event));
+      const element = item(event, doing);
+      kept.unshift({ event, element });
+      list.prepend(element);
     }
   }
-  while (list.children.length > mostShown) {
-    list.lastElementChild.remove();
+  for (const { element } of kept.splice(mostShown)) {
+    element.remove();
   }
-  dropped = newest - list.children.length;
-  put(count, dropped > 0 ? `${newest}, the newest ${list.children.length} shown` : String(newest));
+  drawSeen();
 }
 
-function item(event) {
-  const element = make("li");
-  element.dataset.edge = event.edge;
-  const clock = new Date(event.at_ms).toLocaleTimeString([], { hour12: false });
-  const source = event.time_s === null ? "time unknown" : `${event.time_s.toFixed(1)} s`;
-  const mark = event.edge === "cleared" ? "✓ cleared" : "▲ raised";
-  element.append(
-    make("span", "when", `${clock} · ${source}`),
-    make("b", "edge", mark),
-    make("b", "kind", event.kind),
-    make("span", "what", event.text),
-  );
-  for (const [from, to] of event.bands_hz) {
-    if (from !== null && to !== null) {
-      const button = make("button", "", `show ${from.toFixed(0)} to ${to.toFixed(0)} Hz`);
-      button.type = "button";
-      button.onclick = () => showBand(from, to);
-      element.append(button);
+// acknowledged takes the numbers of all events that somebody has seen.
+export function acknowledged(message) {
+  seen = new Set(message.events);
+  drawSeen();
+}
+
+function isOpen(event) {
+  return event.edge === "raised" && !ofPeople(event.kind) && !seen.has(event.number);
+}
+
+function drawSeen() {
+  for (const { event, element } of kept) {
+    const state = isOpen(event) ? "open" : seen.has(event.number) ? "seen" : "none";
+    if (element.dataset.seen !== state) {
+      element.dataset.seen = state;
     }
+    element.lastElementChild.hidden = state === "none" || (state === "open" && !may);
+    element.lastElementChild.disabled = state === "seen";
+    put(element.lastElementChild, state === "seen" ? "✓ seen" : "Acknowledge");
   }
-  return element;
+  const still = open().length;
+  seenAll.hidden = !may || still < 2;
+  const shown = newest > kept.length ? `${newest}, the newest ${kept.length} shown` : String(newest);
+  put(count, still > 0 ? `${shown} · ${still} not acknowledged` : shown);
+  changed();
 }

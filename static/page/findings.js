@@ -1,6 +1,7 @@
 // The table of what the setup check has found, worst first.
 
 import { digits, make, put, some } from "./format.js";
+import { picture } from "./svg.js";
 
 const marks = {
   stop: ["STOP", "stop-and-look", "to stop for"],
@@ -9,8 +10,6 @@ const marks = {
   fine: ["IN ORDER", "enough", "in order"],
 };
 const mostBands = 3; // more are only counted
-
-const svgSpace = "http://www.w3.org/2000/svg";
 
 const rows = document.getElementById("finding-rows");
 const count = document.getElementById("finding-count");
@@ -56,12 +55,7 @@ function row(finding) {
 function badge(mark) {
   const [word, shape] = marks[mark] ?? [mark, "unknown"];
   const element = make("span", "badge");
-  const picture = document.createElementNS(svgSpace, "svg");
-  const use = document.createElementNS(svgSpace, "use");
-  use.setAttribute("href", `#shape-${shape}`);
-  picture.setAttribute("aria-hidden", "true");
-  picture.append(use);
-  element.append(picture, make("b", "", word));
+  element.append(picture(`shape-${shape}`), make("b", "", word));
   return element;
 }
 

@@ -60,6 +60,11 @@ export function ofSetup() {
   draw();
 }
 
+// control says whether this page may end the run.
+export function control(may) {
+  button.hidden = !may;
+}
+
 // link says whether the program can be reached.
 export function link(isOpen) {
   open = isOpen;

@@ -5,6 +5,7 @@ import { duration, put } from "./format.js";
 const oldS = 3; // levels come ten times a second
 
 const banner = document.getElementById("old");
+const [alarm, details] = banner.children; // the alarm is read out once, the details change every second
 const mark = document.getElementById("link");
 
 let ended = false;
@@ -21,9 +22,10 @@ export function told({ open, ageS, nextS }) {
   const age = `${duration(Math.floor(ageS))} ago`;
   document.documentElement.dataset.old = String(old);
   banner.hidden = !old;
+  put(alarm, old ? "DATA ARE OLD." : "");
   if (old) {
     const next = open ? "The connection stands, but nothing comes." : nextS > 0 ? `Next try in ${Math.ceil(nextS)} s.` : "Trying to connect.";
-    put(banner, `DATA ARE OLD: the last message came ${age}. Do not go by what is shown. ${next}`);
+    put(details, `The last news came ${age}. Do not go by what is shown. ${next}`);
   }
   mark.dataset.link = old ? "old" : open ? "fresh" : "closed";
   put(mark, old ? "✕ no connection" : !open ? "○ program closed" : ended ? "■ ended" : "● receiving");

@@ -1,120 +1,131 @@
-// The channel levels: a row a channel, or with many channels a strip of all and rows for those that are
-// closest to their limits.
+// The channel levels: rows for channels, and with many of them a strip of all besides.
 
-import { make, put } from "./format.js";
+import { grade, share } from "./decibels.js";
+import { make, put, some } from "./format.js";
+import { Row } from "./levelrow.js";
+import { gravitiesAt, stands } from "./marks.js";
+import { ranking } from "./ranking.js";
+import { roving } from "./roving.js";
 
-const mostRows = 24; // beyond that the rows would push the plots off the screen
-const closestRows = 16;
-const bottomDB = -60;
-const limit = 1 - 2 ** -15; // where a channel counts as at its limit
-const holdMs = 2000; // long enough to read a peak by
-const nearDB = 3; // "close" from here on; common practice, no source
+const mostRows = 24; // beyond that rows would fill the page
+const shownRows = 16;
+const nowMs = 2000; // long enough to read a peak by
 const orderMs = 2000; // rows that jump cannot be read
 
 const list = document.getElementById("levels");
 const strip = document.getElementById("strip");
 const block = document.getElementById("block");
+const gap = document.getElementById("gap");
+const hold = document.getElementById("hold");
+const search = document.getElementById("search");
+const order = document.getElementById("order");
+const matches = document.getElementById("matches");
+const settle = roving(list, "button");
 
 let channels = [];
 let slots = []; // of the strip, one a channel; empty without strip
-let rows = []; // { element, parts, channel }
-let held = []; // peak and when, by channel
+let rows = [];
+let recent = []; // highest peak of the last moment and when, by channel
+let held = []; // since the last reset, by channel
 let ordered = 0;
 
-// build makes the rows for the channels of a run.
-export function build(all) {
+// build makes the rows for the channels of a run. reset(channel) forgets a held peak, null all; choose(channel)
+// shows a channel in the plots.
+export function build(all, reset, choose) {
   channels = all;
-  held = channels.map(() => ({ peak: 0, at: -Infinity }));
+  recent = channels.map(() => ({ peak: null, at: -Infinity }));
+  held = channels.map(() => null);
   const many = channels.length > mostRows;
   strip.hidden = !many;
+  document.getElementById("sieve").hidden = !many;
   slots = many ? channels.map(() => make("i")) : [];
   strip.replaceChildren(...slots.map((slot) => {
     const box = make("span");
     box.append(slot);
     return box;
   }));
-  rows = channels.slice(0, many ? closestRows : channels.length).map((_, i) => makeRow(i));
-  rows.forEach(label);
+  rows = channels.slice(0, many ? shownRows : channels.length).map(() => new Row(reset, choose));
   list.replaceChildren(...rows.map((row) => row.element));
+  order.value = many ? "worst" : "rig";
+  search.oninput = arrange;
+  order.onchange = arrange;
+  hold.onclick = () => {
+    hold.ariaPressed = String(!holds());
+    arrange();
+  };
+  document.getElementById("reset").onclick = () => reset(null);
+  arrange();
 }
 
-function makeRow(channel) {
-  const element = make("li");
-  const parts = { name: make("span", "name"), meter: make("span", "meter"), peak: make("i", "peak"), rms: make("i", "rms"), left: make("span", "left") };
-  parts.meter.append(parts.peak, parts.rms);
-  element.append(parts.name, parts.meter, parts.left);
-  return { element, parts, channel };
+// control says whether this page may reset what all pages share.
+export function control(may) {
+  document.getElementById("reset").hidden = !may;
+  rows.forEach((row) => row.control(may));
+  settle();
+}
+
+// holdOrNot turns holding on and off, on this page.
+export function holdOrNot() {
+  hold.click();
 }
 
 // take shows a message with levels.
 export function take(message) {
   const now = performance.now();
-  channels.forEach((_, i) => hold(held[i], message.peak[i], now));
+  channels.forEach((_, i) => follow(recent[i], message.peak[i], now));
   slots.forEach((slot, i) => {
     slot.style.transform = `scaleY(${share(message.peak[i])})`;
-    slot.parentElement.dataset.level = word(held[i].peak);
+    const word = gravitiesAt(i).has("fault") ? "fault" : grade(recent[i].peak);
+    if (slot.parentElement.dataset.level !== word) {
+      slot.parentElement.dataset.level = word;
+    }
   });
-  if (slots.length > 0 && now - ordered > orderMs) {
-    ordered = now;
-    order();
+  if (order.value === "worst" && now - ordered > orderMs && !list.contains(document.activeElement)) {
+    arrange();
   }
-  rows.forEach((row) => draw(row, message));
+  for (const row of rows) {
+    row.draw(message, recent, holds() ? held : null);
+  }
   put(block, message.block === null ? "" : `next block ${Math.round(100 * message.block)} %`);
 }
 
-function hold(kept, peak, now) {
+// takeHeld takes the held peaks, which all pages share.
+export function takeHeld(message) {
+  held = message.peak;
+}
+
+// marked shows new marks.
+export function marked() {
+  const lost = stands().some(({ kind }) => kind === "gap");
+  gap.hidden = !lost;
+  put(gap, lost ? "▬ ▬ GAP: frames were lost, on all channels" : "");
+  rows.forEach((row) => row.mark());
+}
+
+// peakNow is the highest peak of channel i in the last moment.
+export function peakNow(i) {
+  return recent[i]?.peak ?? null;
+}
+
+function holds() {
+  return hold.ariaPressed === "true";
+}
+
+function follow(kept, peak, now) {
   if (peak === null) {
     kept.peak = null;
-  } else if (!(kept.peak > peak) || now - kept.at > holdMs) {
+  } else if (!(kept.peak > peak) || now - kept.at > nowMs) {
     kept.peak = peak;
     kept.at = now;
   }
 }
 
-function order() {
-  const closest = channels.map((_, i) => i).sort((a, b) => held[b].peak - held[a].peak);
-  rows.forEach((row, i) => {
-    row.channel = closest[i];
-    label(row);
-  });
-}
-
-function label({ element, parts, channel }) {
-  const { name, kind, point, axis } = channels[channel];
-  put(parts.name, name);
-  element.title = `${kind} ${name}, point ${point}, ${axis}`;
-}
-
-function draw({ element, parts, channel }, message) {
-  const peak = held[channel].peak;
-  element.dataset.level = word(peak);
-  parts.peak.style.transform = `scaleX(${share(message.peak[channel])})`;
-  parts.rms.style.left = `${100 * share(message.rms[channel])}%`;
-  put(parts.left, text(peak));
-}
-
-function decibels(level) {
-  return 20 * Math.log10(level);
-}
-
-// share is where a level stands between bottomDB and the limit, 0 to 1.
-function share(level) {
-  return level > 0 ? Math.min(Math.max(1 - decibels(level) / bottomDB, 0), 1) : 0;
-}
-
-function word(peak) {
-  if (peak === null) {
-    return "unknown";
-  }
-  return peak >= limit ? "limit" : decibels(peak) > -nearDB ? "near" : peak === 0 ? "silent" : "fine";
-}
-
-function text(peak) {
-  switch (word(peak)) {
-    case "unknown": return "unknown";
-    case "limit": return "▲ AT LIMIT";
-    case "silent": return "○ silent";
-    case "near": return `△ ${(-decibels(peak)).toFixed(1)} dB left`;
-  }
-  return `${(-decibels(peak)).toFixed(0)} dB left`;
+// arrange gives each row its channel.
+function arrange() {
+  ordered = performance.now();
+  const found = ranking(channels, order.value, search.value, recent, held);
+  rows.forEach((row, n) => row.show(found[n] === undefined ? null : found[n], channels[found[n]]));
+  const left = found.length - rows.length;
+  put(matches, found.length === 0 ? "no such channel" : left > 0 ? `${rows.length} of ${some(found.length, "channel")}` : some(found.length, "channel"));
+  settle();
 }

@@ -1,48 +1,47 @@
-// One plot with its title, legend and help.
+// One plot: its frame, its chart, and what of the newest refresh it shows.
 
-import { make, put } from "./format.js";
-import { colour, dress } from "./palette.js";
-import { follow, readout } from "./readout.js";
+import { axis } from "./axis.js";
+import { column, frequencies, points, sizes } from "./columns.js";
+import { flag } from "./flags.js";
+import { put } from "./format.js";
+import { Frame } from "./frame.js";
+import { Legend } from "./legend.js";
+import { dress, grids, margins } from "./palette.js";
+import { reach } from "./reach.js";
+import { follow, readout, remark } from "./readout.js";
+import { nameOf, series, traces } from "./series.js";
+import { Span } from "./span.js";
 import { zoom } from "./zoom.js";
 
-const svgSpace = "http://www.w3.org/2000/svg";
-
-export class Panel {
-  // plot is one of the description's; look shows a band in all plots, with nulls the whole.
-  constructor(plot, description, look) {
-    this.plot = plot;
-    this.spacingHz = description.spacing_hz;
-    this.columns = plot.curves.map(() => []);
+export class Panel extends Frame {
+  // plot is one of the description's; page is what all plots of the page share, see charts.js.
+  constructor(plot, page) {
+    super(plot, page);
+    this.columns = plot.curves.map(() => []); // as they are shown, in dB or as sizes
     this.names = plot.curves.map((curve) => curve.name);
-    this.message = null;
-    this.stale = false; // there is something to draw
-    this.inView = true;
-
-    this.element = make("figure", "plot");
-    this.element.id = `plot-${plot.id}`;
-    this.legend = make("ul", "curves");
-    this.note = make("p", "note", "No estimates yet.");
-    this.canvas = make("div", "canvas");
-    const head = make("figcaption");
-    head.append(make("h3", "", plot.title), this.legend, this.help());
-    this.element.append(head, this.canvas, this.note);
-    if (plot.needs !== "") {
-      this.note.textContent = plot.needs;
-      this.legend.hidden = true;
-      return;
-    }
-    this.canvas.tabIndex = 0;
-    this.canvas.setAttribute("role", "img");
-    this.canvas.setAttribute("aria-label", `${plot.title}. ${plot.help} Left and right arrow keys read values.`);
-    if (plot.axis === "frequency") {
-      zoom(this, look);
+    this.x = null; // Hz by point
+    this.log = false; // equal ratios of frequency are equally far apart
+    this.legend = new Legend(plot.curves, () => this.redraw());
+    this.spread();
+    this.frame(this.legend.element);
+    if (plot.needs === "") {
+      this.canvas.setAttribute("role", "img");
+      this.canvas.setAttribute("aria-label", `${plot.title}. ${plot.help} Arrow keys left and right read values, plus and minus narrow and widen the band.`);
     }
   }
 
-  help() {
-    const details = make("details");
-    details.append(make("summary", "", "how to read"), make("p", "", this.plot.help));
-    return details;
+  // spread makes the vertical ranges anew.
+  spread() {
+    this.spans = this.plot.panes.map((pane) => new Span(pane, this.sizesOf(pane) === null ? pane.least : 0));
+  }
+
+  // sizesOf is what a pane shows in place of dB, or null.
+  sizesOf(pane) {
+    return this.page.sizes ? pane.sizes : null;
+  }
+
+  unit(curve) {
+    return (curve.unit === "dB" ? this.sizesOf(this.plot.panes[curve.pane])?.unit : undefined) ?? curve.unit;
   }
 
   // open makes the chart, once the element is in the page.
@@ -51,102 +50,135 @@ export class Panel {
       return;
     }
     this.chart = echarts.init(this.canvas, null, { renderer: "canvas" });
+    this.overlay();
     this.recolour();
     follow(this);
-    new ResizeObserver(() => this.chart.resize()).observe(this.canvas);
-    new IntersectionObserver(([entry]) => {
-      this.inView = entry.isIntersecting;
-      this.draw();
-    }, { rootMargin: "200px" }).observe(this.element);
-  }
-
-  // recolour draws all anew in the colours of the moment.
-  recolour() {
-    if (this.chart === undefined) {
-      return;
+    if (this.plot.axis === "frequency") {
+      zoom(this, this.page.look);
     }
-    const option = dress(this.plot.option, this.plot.curves);
-    option.tooltip = { ...option.tooltip, ...readout(this) };
-    this.chart.setOption(option, { notMerge: true });
-    this.stale = true;
-    this.listCurves();
-    this.draw();
-  }
-
-  // take keeps the newest refresh; it is drawn when the plot is in view.
-  take(message) {
-    this.message = message;
-    this.stale = true;
-    this.draw();
-  }
-
-  draw() {
-    if (!this.stale || !this.inView || this.message === null) {
-      return;
-    }
-    this.stale = false;
-    const { curves, view } = this.message;
-    this.x = this.plot.axis === "frequency" ? this.frequencies(view, curves) : null;
-    this.columns = this.plot.curves.map((curve) => column(curves, curve));
-    this.names = this.plot.curves.map((curve) => curve.name || (view.names[curve.from]?.[Math.max(curve.index, 0)] ?? ""));
-    this.chart.setOption({
-      xAxis: this.plot.axis === "frequency"
-        ? this.plot.panes.map(() => ({ min: view.first * this.spacingHz, max: view.last * this.spacingHz }))
-        : [],
-      series: this.plot.curves.map((curve, i) => ({ name: this.names[i], data: this.points(i, curve, curves) })),
+    this.watchSize(() => {
+      this.chart.resize();
+      this.chart.setOption({ grid: grids(this.plot.panes.length, this.canvas.clientHeight) });
+      this.place();
     });
-    this.listCurves();
+  }
+
+  // recolour draws all anew: in other colours, on other scales, with other kept traces.
+  recolour() {
+    if (this.chart !== undefined) {
+      this.margin();
+      this.remake();
+      this.redraw();
+    }
+  }
+
+  // remake gives the chart all of its option anew, without data.
+  remake() {
+    const { panes, curves, axis } = this.plot;
+    const option = dress(this.plot.option, curves, panes.map((pane) => this.sizesOf(pane)?.quantity ?? pane.quantity), this.canvas.clientHeight);
+    option.tooltip = { ...option.tooltip, ...readout(this) };
+    if (axis === "frequency") {
+      option.xAxis.forEach((x) => { x.type = this.log ? "log" : "value"; });
+    }
+    this.chart.setOption(option, { notMerge: true });
+  }
+
+  // scale has all redrawn after the page turned to other scales.
+  scale() {
+    this.spread();
+    this.recolour();
+  }
+
+  refit() {
+    this.spans.forEach((span) => span.refit());
+    this.redraw();
+  }
+
+  paint() {
+    const { curves, view } = this.message;
+    if (view.log !== this.log) {
+      this.log = view.log;
+      this.remake(); // an axis cannot become another kind
+    }
+    const chosen = JSON.stringify([view.names, view.first, view.last, this.page.band]);
+    if (chosen !== this.chosen) {
+      this.chosen = chosen;
+      this.spans.forEach((span) => span.refit()); // another curve may jump to its range
+    }
+    this.x = this.frequencies(view);
+    this.points = points(view.first, view.runs);
+    this.columns = this.plot.curves.map((curve) => this.shown(curve, column(curves, curve, this.x?.length ?? 0)));
+    this.names = this.plot.curves.map((curve) => nameOf(curve, view));
+    this.kept = this.page.kept.of(this.plot.id).filter(({ letter }) => !this.legend.hidesKept(letter));
+    this.chart.setOption({ xAxis: this.xAxes(view), yAxis: this.yAxes(), series: series(this) });
+    this.legend.show(this.plot.curves, this.names, this.columns.map((values, i) => values.length > 0 || this.plot.curves[i].name !== ""), this.page.kept.of(this.plot.id));
+    this.place();
+    this.say();
+  }
+
+  // shown is a column of a curve as this page shows it.
+  shown(curve, values) {
+    const pane = this.sizesOf(this.plot.panes[curve.pane]);
+    return pane === null || curve.unit !== "dB" ? values : sizes(values, pane.decade);
+  }
+
+  hides(i) {
+    return this.legend.hides(this.plot.curves[i], this.names[i]);
+  }
+
+  xAxes(view) {
+    if (this.plot.axis !== "frequency") {
+      return [];
+    }
+    this.axis = axis(view, this.page.spacingHz, this.page.band);
+    const { min, max, ticks } = this.axis;
+    const custom = { customValues: ticks };
+    return this.plot.panes.map(() => ({ min, max, axisTick: custom, axisLabel: custom }));
+  }
+
+  yAxes() {
+    return this.plot.panes.map((_, p) => this.spans[p].of(...reach(this, p), performance.now()) ?? {});
+  }
+
+  // compared are those of kept traces whose curves are not hidden.
+  compared(traces) {
+    return traces.filter(({ curve, name }) => !this.legend.hides(curve, name));
+  }
+
+  frequencies(view) {
+    return this.plot.axis === "frequency" ? frequencies(view, this.page.spacingHz) : null;
+  }
+
+  // traces are what can be kept of a message.
+  traces({ curves, view }) {
+    return traces(this.plot.curves, curves, view, this.frequencies(view));
+  }
+
+  // place puts what lies over the chart where it belongs.
+  place() {
+    if (this.axis !== undefined) {
+      flag(this, this.page.standing);
+      remark(this);
+    }
+  }
+
+  // pixel is where a frequency stands from the left edge of the canvas; hertz is the frequency at a pixel.
+  pixel(hz) {
+    const { left, right } = margins();
+    return left + this.axis.at(hz) * (this.canvas.clientWidth - left - right);
+  }
+
+  hertz(pixel) {
+    const { left, right } = margins();
+    return this.axis.hz((pixel - left) / (this.canvas.clientWidth - left - right));
+  }
+
+  // say tells when there is nothing to see, and why.
+  say() {
     const known = this.columns.some((values) => values.some((value) => value !== null));
-    this.note.hidden = known;
-    put(this.note, "Unknown as yet: more averages than forces are needed.");
+    const all = this.plot.curves.every((_, i) => this.columns[i].length === 0 || this.hides(i));
+    this.note.hidden = known && !all;
+    put(this.note, known ? "All curves are hidden: the legend shows them." : "Unknown as yet: more averages than forces are needed.");
     this.element.dataset.number = String(this.message.number);
   }
-
-  // points are curve i as ECharts takes it.
-  points(i, curve, curves) {
-    if (this.x === null) {
-      return this.columns[i];
-    }
-    const floor = curve.above === "" ? null : curves[curve.above] ?? [];
-    return this.columns[i].map((value, n) => [this.x[n], floor === null || value === null ? value : value - floor[n]]);
-  }
-
-  // frequencies are those of the points: a point stands in the middle of its lines.
-  frequencies({ first, last, step }) {
-    const count = Math.ceil((last - first + 1) / step);
-    return Array.from({ length: count }, (_, i) => this.spacingHz * Math.min(first + i * step + (step - 1) / 2, last));
-  }
-
-  listCurves() {
-    const shown = this.plot.curves
-      .map((curve, i) => ({ curve, name: curve.group || this.names[i], there: curve.name !== "" || this.columns[i].length > 0 }))
-      .filter(({ curve, there }, i, all) => there && (curve.group === "" || curve.group !== all[i + 1]?.curve.group));
-    const key = JSON.stringify([shown.map(({ name }) => name), colour("text")]);
-    if (key !== this.listed) {
-      this.listed = key;
-      this.legend.replaceChildren(...shown.map(({ curve, name }) => legendItem(curve, name)));
-    }
-  }
-}
-
-// column is what the message has for a curve, an array, empty where it has nothing.
-function column(curves, curve) {
-  const found = curves[curve.from];
-  return (curve.index < 0 ? found : found?.[curve.index]) ?? [];
-}
-
-const dashes = { solid: "", dashed: "5 3", dotted: "1.5 2.5" };
-
-function legendItem(curve, name) {
-  const item = make("li");
-  const picture = document.createElementNS(svgSpace, "svg");
-  const line = document.createElementNS(svgSpace, "line");
-  const thick = curve.above !== "" ? 9 : ({ fine: 1.2, bold: 3.5 }[curve.weight] ?? 2);
-  for (const [key, value] of Object.entries({ x1: 0, x2: 22, y1: 5, y2: 5, "stroke-width": thick, "stroke-dasharray": dashes[curve.dash], stroke: colour(curve.role), "stroke-opacity": curve.above === "" ? 1 : 0.35 })) {
-    line.setAttribute(key, value);
-  }
-  picture.setAttribute("viewBox", "0 0 22 10");
-  picture.append(line);
-  item.append(picture, make("span", "", name));
-  return item;
 }

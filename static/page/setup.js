@@ -35,6 +35,7 @@ let state = null; // the newest message; null without a setup check
 let fresh = false; // the program can be reached and what is shown is not old
 let old = false;
 let ending = false;
+let may = true; // start a stage
 let asked = false; // the button was pressed and the program has not answered yet
 let told = null; // the stage whose instruction stands
 let toldAt = 0;
@@ -74,6 +75,12 @@ export function finishing(is) {
   draw();
 }
 
+// control says whether this page may start a stage.
+export function control(allowed) {
+  may = allowed;
+  draw();
+}
+
 // link says whether the program can be reached, and whether what is shown is old.
 export function link(isOpen, isOld) {
   old = isOld;
@@ -87,7 +94,7 @@ export function title() {
 }
 
 function canMeasure() {
-  return state !== null && state.waiting && !state.ended && fresh && !ending && !asked && performance.now() - toldAt >= readMs;
+  return may && state !== null && state.waiting && !state.ended && fresh && !ending && !asked && performance.now() - toldAt >= readMs;
 }
 
 function draw() {

@@ -10,6 +10,7 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+	"strings"
 	"sync"
 	"testing"
 	"time"
@@ -136,6 +137,16 @@ func Command[P, R any](w *Window, c cdp.Command[P, R], params P) {
 	}
 }
 
+// Ask gives the browser a command and returns its answer.
+func Ask[P, R any](w *Window, c cdp.Command[P, R], params P) R {
+	w.t.Helper()
+	answer, err := chromedp.Call(w.ctx, c, params)
+	if err != nil {
+		w.t.Fatal(err)
+	}
+	return answer
+}
+
 // Value is what a JavaScript expression gives.
 func Value[T any](w *Window, expression string) T {
 	w.t.Helper()
@@ -146,15 +157,24 @@ func Value[T any](w *Window, expression string) T {
 	return v
 }
 
-// Until waits for a JavaScript expression to become true.
+// Until waits for a JavaScript expression to become true, also across a page that loads itself anew.
 func (w *Window) Until(expression string) {
 	w.t.Helper()
 	poll := chromedp.Poll[bool](expression, chromedp.WithPollingTimeout(patience))
-	if _, err := chromedp.Run(w.ctx, poll); err != nil {
+	_, err := chromedp.Run(w.ctx, poll)
+	for err != nil && elsewhere(err) && w.ctx.Err() == nil {
+		_, err = chromedp.Run(w.ctx, poll)
+	}
+	if err != nil {
 		w.mu.Lock()
 		defer w.mu.Unlock()
 		w.t.Fatalf("waiting for %s: %v; in the page: %q", expression, err, w.troubles)
 	}
+}
+
+// elsewhere tells whether a command failed because the page it was for has gone.
+func elsewhere(err error) bool {
+	return strings.Contains(err.Error(), "navigated") || strings.Contains(err.Error(), "Cannot find context")
 }
 
 // Screen gives the page a screen of that size, light or dark.
@@ -190,6 +210,13 @@ func (w *Window) Focus(selector string) {
 func (w *Window) Press(key string) {
 	w.t.Helper()
 	w.Do(chromedp.KeyEvent(key))
+}
+
+// Type types text into an element as if it were pasted, blanks and all.
+func (w *Window) Type(selector, text string) {
+	w.t.Helper()
+	w.Focus(selector)
+	Command(w, input.InsertText, input.InsertTextParams{Text: text})
 }
 
 // Choose chooses an option of a select element as a person would.
