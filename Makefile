@@ -5,7 +5,7 @@ PYTHON  := /usr/bin/python3# Debian's, which has Debian's NumPy and SciPy
 SUDO    := $(shell [ "$$(id -u)" = 0 ] || echo sudo)
 ECHARTS := static/page/echarts.min.js
 
-.PHONY: build soundcard demo test check tools references fuzz screenshots bench clean
+.PHONY: build soundcard demo test check tools references scenarios fuzz screenshots bench clean
 
 build: $(ECHARTS)
 	$(GO) build -o bin/shakerwatch ./cmd/shakerwatch
@@ -48,6 +48,10 @@ $(ECHARTS): static/package.json static/package-lock.json
 
 references:
 	$(PYTHON) testdata/make_references.py
+
+# What breaks on rigs drawn at random, and how the watch names it: some ten minutes.
+scenarios: $(ECHARTS)
+	$(GO) run ./cmd/scenarios
 
 # Every fuzz target for FUZZTIME each.
 FUZZTIME ?= 60s
