@@ -75,3 +75,34 @@ func BenchmarkSums(b *testing.B) {
 		})
 	}
 }
+
+// BenchmarkMisfits is the misfits of 801 lines of a block and a logarithm of the product of each four: millions of
+// products of a matrix a second.
+func BenchmarkMisfits(b *testing.B) {
+	for _, size := range []struct{ q, p int }{{1, 3}, {2, 14}, {4, 60}, {8, 504}} {
+		b.Run(fmt.Sprintf("%dx%d", size.q, size.p), func(b *testing.B) {
+			const lines = 801
+			q, p := size.q, size.p
+			m := NewMatrices(lines, p, q)
+			block := complexNoise(lines*(q+p), 1)
+			weights, products := make([]float32, Whole(p)), make([]float64, Whole(p))
+			contestant := func(l *loops) func() {
+				return func() {
+					for k := range lines {
+						if k%4 == 0 {
+							for o := range products {
+								products[o] = 1
+							}
+						}
+						x, y := block[k*(q+p):][:q], block[k*(q+p)+q:][:p]
+						l.misfit(products, y, x, m.values[k*m.size():][:m.size()], weights, 1, 1e18)
+						if k%4 == 3 {
+							l.logarithms(products)
+						}
+					}
+				}
+			}
+			race(b, lines*float64(q*p), []string{"plain", "fast"}, contestant(&plain), contestant(fastest))
+		})
+	}
+}

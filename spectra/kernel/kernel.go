@@ -1,5 +1,5 @@
-// Package kernel holds the two loops in which nearly all of the arithmetic's time goes: the Fourier
-// transform of many channels at once, and the sums of their products.
+// Package kernel holds the loops in which nearly all of the arithmetic's time goes: the Fourier transform
+// of many channels at once, the sums of their products, and how far some are from what others say.
 //
 // It knows channels, samples and lines. It may not know forces from responses, averages, densities
 // or goroutines.
@@ -38,6 +38,13 @@ type loops struct {
 
 	// power adds |y[o]|² to sums[o].
 	power func(sums []float64, y []complex128)
+
+	// misfit multiplies products[o] by 1 + t of row o: see Matrices.MultiplyMisfits. values are those of one
+	// line.
+	misfit func(products []float64, y, x []complex128, values, weights []float32, gain, most float64)
+
+	// logarithms replaces each of x by its logarithm: see Logarithms.
+	logarithms func(x []float64)
 }
 
 var plain = loops{
@@ -47,6 +54,9 @@ var plain = loops{
 	split: splitPlain,
 	outer: outerPlain,
 	power: powerPlain,
+
+	misfit:     misfitPlain,
+	logarithms: logarithmsPlain,
 }
 
 // times is a·b, rounded after every step.

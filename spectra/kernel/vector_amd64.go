@@ -19,6 +19,9 @@ var vector = loops{
 	split: splitAVX2,
 	outer: outerAVX2,
 	power: powerVector,
+
+	misfit:     misfitAVX2,
+	logarithms: logarithmsVector,
 }
 
 // loadVector leaves what does not fill a group of Lanes samples to the plain loop.
@@ -37,6 +40,13 @@ func powerVector(sums []float64, y []complex128) {
 	n := len(y) / 4 * 4
 	powerAVX2(sums[:n], y[:n])
 	powerPlain(sums[n:], y[n:])
+}
+
+// logarithmsVector leaves what does not fill a register to the plain loop.
+func logarithmsVector(x []float64) {
+	n := len(x) / 4 * 4
+	logarithmsAVX2(x[:n])
+	logarithmsPlain(x[n:])
 }
 
 //go:noescape
@@ -68,3 +78,9 @@ func outerAVX2(sums, y, x []complex128)
 
 //go:noescape
 func powerAVX2(sums []float64, y []complex128)
+
+//go:noescape
+func misfitAVX2(products []float64, y, x []complex128, values, weights []float32, gain, most float64)
+
+//go:noescape
+func logarithmsAVX2(x []float64)

@@ -50,12 +50,127 @@ DATA minusHalf8<>+16(SB)/8, $0xbfe6a09e667f3bcd
 DATA minusHalf8<>+24(SB)/8, $0xbfe6a09e667f3bcd
 GLOBL minusHalf8<>(SB), RODATA|NOPTR, $32
 
+DATA one<>+0(SB)/8, $0x3ff0000000000000
+DATA one<>+8(SB)/8, $0x3ff0000000000000
+DATA one<>+16(SB)/8, $0x3ff0000000000000
+DATA one<>+24(SB)/8, $0x3ff0000000000000
+GLOBL one<>(SB), RODATA|NOPTR, $32
+
+DATA ln2<>+0(SB)/8, $0x3fe62e42fefa39ef
+DATA ln2<>+8(SB)/8, $0x3fe62e42fefa39ef
+DATA ln2<>+16(SB)/8, $0x3fe62e42fefa39ef
+DATA ln2<>+24(SB)/8, $0x3fe62e42fefa39ef
+GLOBL ln2<>(SB), RODATA|NOPTR, $32
+
+DATA rootHalf<>+0(SB)/8, $0x3fe6a09e667f3bcd
+DATA rootHalf<>+8(SB)/8, $0x3fe6a09e667f3bcd
+DATA rootHalf<>+16(SB)/8, $0x3fe6a09e667f3bcd
+DATA rootHalf<>+24(SB)/8, $0x3fe6a09e667f3bcd
+GLOBL rootHalf<>(SB), RODATA|NOPTR, $32
+
+DATA oneLessRootHalf<>+0(SB)/8, $0x00095f619980c433
+DATA oneLessRootHalf<>+8(SB)/8, $0x00095f619980c433
+DATA oneLessRootHalf<>+16(SB)/8, $0x00095f619980c433
+DATA oneLessRootHalf<>+24(SB)/8, $0x00095f619980c433
+GLOBL oneLessRootHalf<>(SB), RODATA|NOPTR, $32
+
+DATA fraction<>+0(SB)/8, $0x000fffffffffffff
+DATA fraction<>+8(SB)/8, $0x000fffffffffffff
+DATA fraction<>+16(SB)/8, $0x000fffffffffffff
+DATA fraction<>+24(SB)/8, $0x000fffffffffffff
+GLOBL fraction<>(SB), RODATA|NOPTR, $32
+
+DATA two52<>+0(SB)/8, $0x4330000000000000
+DATA two52<>+8(SB)/8, $0x4330000000000000
+DATA two52<>+16(SB)/8, $0x4330000000000000
+DATA two52<>+24(SB)/8, $0x4330000000000000
+GLOBL two52<>(SB), RODATA|NOPTR, $32
+
+DATA two52Exponent<>+0(SB)/8, $0x43300000000003ff
+DATA two52Exponent<>+8(SB)/8, $0x43300000000003ff
+DATA two52Exponent<>+16(SB)/8, $0x43300000000003ff
+DATA two52Exponent<>+24(SB)/8, $0x43300000000003ff
+GLOBL two52Exponent<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver3<>+0(SB)/8, $0x3fd5555555555555
+DATA oneOver3<>+8(SB)/8, $0x3fd5555555555555
+DATA oneOver3<>+16(SB)/8, $0x3fd5555555555555
+DATA oneOver3<>+24(SB)/8, $0x3fd5555555555555
+GLOBL oneOver3<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver5<>+0(SB)/8, $0x3fc999999999999a
+DATA oneOver5<>+8(SB)/8, $0x3fc999999999999a
+DATA oneOver5<>+16(SB)/8, $0x3fc999999999999a
+DATA oneOver5<>+24(SB)/8, $0x3fc999999999999a
+GLOBL oneOver5<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver7<>+0(SB)/8, $0x3fc2492492492492
+DATA oneOver7<>+8(SB)/8, $0x3fc2492492492492
+DATA oneOver7<>+16(SB)/8, $0x3fc2492492492492
+DATA oneOver7<>+24(SB)/8, $0x3fc2492492492492
+GLOBL oneOver7<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver9<>+0(SB)/8, $0x3fbc71c71c71c71c
+DATA oneOver9<>+8(SB)/8, $0x3fbc71c71c71c71c
+DATA oneOver9<>+16(SB)/8, $0x3fbc71c71c71c71c
+DATA oneOver9<>+24(SB)/8, $0x3fbc71c71c71c71c
+GLOBL oneOver9<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver11<>+0(SB)/8, $0x3fb745d1745d1746
+DATA oneOver11<>+8(SB)/8, $0x3fb745d1745d1746
+DATA oneOver11<>+16(SB)/8, $0x3fb745d1745d1746
+DATA oneOver11<>+24(SB)/8, $0x3fb745d1745d1746
+GLOBL oneOver11<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver13<>+0(SB)/8, $0x3fb3b13b13b13b14
+DATA oneOver13<>+8(SB)/8, $0x3fb3b13b13b13b14
+DATA oneOver13<>+16(SB)/8, $0x3fb3b13b13b13b14
+DATA oneOver13<>+24(SB)/8, $0x3fb3b13b13b13b14
+GLOBL oneOver13<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver15<>+0(SB)/8, $0x3fb1111111111111
+DATA oneOver15<>+8(SB)/8, $0x3fb1111111111111
+DATA oneOver15<>+16(SB)/8, $0x3fb1111111111111
+DATA oneOver15<>+24(SB)/8, $0x3fb1111111111111
+GLOBL oneOver15<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver17<>+0(SB)/8, $0x3fae1e1e1e1e1e1e
+DATA oneOver17<>+8(SB)/8, $0x3fae1e1e1e1e1e1e
+DATA oneOver17<>+16(SB)/8, $0x3fae1e1e1e1e1e1e
+DATA oneOver17<>+24(SB)/8, $0x3fae1e1e1e1e1e1e
+GLOBL oneOver17<>(SB), RODATA|NOPTR, $32
+
+DATA oneOver19<>+0(SB)/8, $0x3faaf286bca1af28
+DATA oneOver19<>+8(SB)/8, $0x3faaf286bca1af28
+DATA oneOver19<>+16(SB)/8, $0x3faaf286bca1af28
+DATA oneOver19<>+24(SB)/8, $0x3faaf286bca1af28
+GLOBL oneOver19<>(SB), RODATA|NOPTR, $32
+
 // The sign bit of the imaginary parts of two complex numbers.
 DATA conjugate<>+0(SB)/8, $0x0000000000000000
 DATA conjugate<>+8(SB)/8, $0x8000000000000000
 DATA conjugate<>+16(SB)/8, $0x0000000000000000
 DATA conjugate<>+24(SB)/8, $0x8000000000000000
 GLOBL conjugate<>(SB), RODATA|NOPTR, $32
+
+// Masks of the leading 8 words and of none behind them.
+DATA leading<>+0(SB)/8, $0xffffffffffffffff
+DATA leading<>+8(SB)/8, $0xffffffffffffffff
+DATA leading<>+16(SB)/8, $0xffffffffffffffff
+DATA leading<>+24(SB)/8, $0xffffffffffffffff
+DATA leading<>+32(SB)/8, $0xffffffffffffffff
+DATA leading<>+40(SB)/8, $0xffffffffffffffff
+DATA leading<>+48(SB)/8, $0xffffffffffffffff
+DATA leading<>+56(SB)/8, $0xffffffffffffffff
+DATA leading<>+64(SB)/8, $0x0000000000000000
+DATA leading<>+72(SB)/8, $0x0000000000000000
+DATA leading<>+80(SB)/8, $0x0000000000000000
+DATA leading<>+88(SB)/8, $0x0000000000000000
+DATA leading<>+96(SB)/8, $0x0000000000000000
+DATA leading<>+104(SB)/8, $0x0000000000000000
+DATA leading<>+112(SB)/8, $0x0000000000000000
+DATA leading<>+120(SB)/8, $0x0000000000000000
+GLOBL leading<>(SB), RODATA|NOPTR, $128
 
 // func pass3AVX2(x, turns []float64, m int)
 TEXT ·pass3AVX2(SB), NOSPLIT, $0-56
@@ -713,6 +828,165 @@ four:
 	VADDPD (DI), Y5, Y6
 	VMOVUPD Y6, (DI)
 	ADDQ $64, SI
+	ADDQ $32, DI
+	CMPQ DI, DX
+	JB four
+done:
+	VZEROUPPER
+	RET
+
+// func misfitAVX2(products []float64, y, x []complex128, values, weights []float32, gain, most float64)
+TEXT ·misfitAVX2(SB), NOSPLIT, $0-136
+	MOVQ products_base+0(FP), DI
+	MOVQ y_base+24(FP), BX
+	MOVQ y_len+32(FP), DX
+	MOVQ x_base+48(FP), SI
+	MOVQ x_len+56(FP), CX
+	SHLQ $4, CX
+	ADDQ SI, CX
+	MOVQ values_base+72(FP), R8
+	MOVQ weights_base+96(FP), R9
+	VBROADCASTSD gain+120(FP), Y15
+	VBROADCASTSD most+128(FP), Y14
+	SUBQ $4, DX
+	JL fewer
+four:
+	VMOVUPD (BX), Y2
+	VMOVUPD 32(BX), Y3
+	VUNPCKLPD Y3, Y2, Y0
+	VUNPCKHPD Y3, Y2, Y1
+	VPERMPD $0xd8, Y0, Y0
+	VPERMPD $0xd8, Y1, Y1
+	MOVQ SI, AX
+	CMPQ AX, CX
+	JGE leftFour
+columnFour:
+	VCVTPS2PD (R8), Y2
+	VCVTPS2PD 16(R8), Y3
+	VBROADCASTSD (AX), Y4
+	VBROADCASTSD 8(AX), Y5
+	VMULPD Y4, Y2, Y6
+	VMULPD Y5, Y3, Y7
+	VSUBPD Y7, Y6, Y6
+	VSUBPD Y6, Y0, Y0
+	VMULPD Y5, Y2, Y8
+	VMULPD Y4, Y3, Y9
+	VADDPD Y9, Y8, Y8
+	VSUBPD Y8, Y1, Y1
+	ADDQ $32, R8
+	ADDQ $16, AX
+	CMPQ AX, CX
+	JB columnFour
+leftFour:
+	VMULPD Y0, Y0, Y0
+	VMULPD Y1, Y1, Y1
+	VADDPD Y1, Y0, Y0
+	VCVTPS2PD (R9), Y2
+	VMULPD Y2, Y0, Y0
+	VMULPD Y15, Y0, Y0
+	VMINPD Y0, Y14, Y0
+	VADDPD one<>(SB), Y0, Y0
+	VMULPD (DI), Y0, Y0
+	VMOVUPD Y0, (DI)
+	ADDQ $64, BX
+	ADDQ $16, R9
+	ADDQ $32, DI
+	SUBQ $4, DX
+	JGE four
+fewer:
+	ADDQ $4, DX
+	JZ done
+	SHLQ $4, DX
+	LEAQ leading<>+64(SB), R10
+	SUBQ DX, R10
+	VMOVUPD (R10), Y12
+	VMOVUPD 32(R10), Y13
+	VMASKMOVPD (BX), Y12, Y2
+	VMASKMOVPD 32(BX), Y13, Y3
+	VUNPCKLPD Y3, Y2, Y0
+	VUNPCKHPD Y3, Y2, Y1
+	VPERMPD $0xd8, Y0, Y0
+	VPERMPD $0xd8, Y1, Y1
+	MOVQ SI, AX
+	CMPQ AX, CX
+	JGE leftFewer
+columnFewer:
+	VCVTPS2PD (R8), Y2
+	VCVTPS2PD 16(R8), Y3
+	VBROADCASTSD (AX), Y4
+	VBROADCASTSD 8(AX), Y5
+	VMULPD Y4, Y2, Y6
+	VMULPD Y5, Y3, Y7
+	VSUBPD Y7, Y6, Y6
+	VSUBPD Y6, Y0, Y0
+	VMULPD Y5, Y2, Y8
+	VMULPD Y4, Y3, Y9
+	VADDPD Y9, Y8, Y8
+	VSUBPD Y8, Y1, Y1
+	ADDQ $32, R8
+	ADDQ $16, AX
+	CMPQ AX, CX
+	JB columnFewer
+leftFewer:
+	VMULPD Y0, Y0, Y0
+	VMULPD Y1, Y1, Y1
+	VADDPD Y1, Y0, Y0
+	VCVTPS2PD (R9), Y2
+	VMULPD Y2, Y0, Y0
+	VMULPD Y15, Y0, Y0
+	VMINPD Y0, Y14, Y0
+	VADDPD one<>(SB), Y0, Y0
+	VMULPD (DI), Y0, Y0
+	VMOVUPD Y0, (DI)
+done:
+	VZEROUPPER
+	RET
+
+// func logarithmsAVX2(x []float64)
+TEXT ·logarithmsAVX2(SB), NOSPLIT, $0-24
+	MOVQ x_base+0(FP), DI
+	MOVQ x_len+8(FP), DX
+	LEAQ (DI)(DX*8), DX
+	CMPQ DI, DX
+	JGE done
+four:
+	VMOVUPD (DI), Y0
+	VPADDQ oneLessRootHalf<>(SB), Y0, Y1
+	VPSRLQ $52, Y1, Y2
+	VPOR two52<>(SB), Y2, Y3
+	VSUBPD two52Exponent<>(SB), Y3, Y4
+	VPAND fraction<>(SB), Y1, Y5
+	VPADDQ rootHalf<>(SB), Y5, Y6
+	VADDPD one<>(SB), Y6, Y7
+	VSUBPD one<>(SB), Y6, Y8
+	VDIVPD Y7, Y8, Y9
+	VMULPD Y9, Y9, Y10
+	VMOVUPD oneOver19<>(SB), Y11
+	VMULPD Y10, Y11, Y12
+	VADDPD oneOver17<>(SB), Y12, Y13
+	VMULPD Y10, Y13, Y14
+	VADDPD oneOver15<>(SB), Y14, Y15
+	VMULPD Y10, Y15, Y2
+	VADDPD oneOver13<>(SB), Y2, Y3
+	VMULPD Y10, Y3, Y1
+	VADDPD oneOver11<>(SB), Y1, Y5
+	VMULPD Y10, Y5, Y6
+	VADDPD oneOver9<>(SB), Y6, Y7
+	VMULPD Y10, Y7, Y8
+	VADDPD oneOver7<>(SB), Y8, Y11
+	VMULPD Y10, Y11, Y12
+	VADDPD oneOver5<>(SB), Y12, Y13
+	VMULPD Y10, Y13, Y14
+	VADDPD oneOver3<>(SB), Y14, Y15
+	VADDPD Y9, Y9, Y2
+	VMULPD Y10, Y15, Y3
+	VMULPD Y2, Y3, Y1
+	VADDPD Y2, Y1, Y5
+	VMULPD ln2<>(SB), Y4, Y6
+	VADDPD Y5, Y6, Y7
+	VSUBPD Y0, Y0, Y8
+	VADDPD Y8, Y7, Y11
+	VMOVUPD Y11, (DI)
 	ADDQ $32, DI
 	CMPQ DI, DX
 	JB four

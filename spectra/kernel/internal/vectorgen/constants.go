@@ -2,7 +2,7 @@ package main
 
 import "math"
 
-// The constants of the passes, by name: four times the same number, so that one can be an operand.
+// The constants, by name: four times the same number, so that one can be an operand.
 var constantTable = []struct {
 	name  string
 	value float64
@@ -15,6 +15,15 @@ var constantTable = []struct {
 	{"sin5b", 0.58778525229247312916870595463907276860},
 	{"half8", math.Sqrt2 / 2},
 	{"minusHalf8", -math.Sqrt2 / 2},
+	{"one", 1},
+	{"ln2", math.Ln2},
+	{"rootHalf", math.Sqrt2 / 2},
+	{"oneLessRootHalf", math.Float64frombits(math.Float64bits(1) - math.Float64bits(math.Sqrt2/2))},
+	{"fraction", math.Float64frombits(1<<52 - 1)},
+	{"two52", 1 << 52},
+	{"two52Exponent", 1<<52 + 1023}, // with the exponent that 1 has
+	{odd(3), 1. / 3}, {odd(5), 1. / 5}, {odd(7), 1. / 7}, {odd(9), 1. / 9}, {odd(11), 1. / 11},
+	{odd(13), 1. / 13}, {odd(15), 1. / 15}, {odd(17), 1. / 17}, {odd(19), 1. / 19},
 }
 
 // constant is the address of a constant.
@@ -34,4 +43,10 @@ func constants(f *file) {
 		f.line("DATA conjugate<>+%d(SB)/8, $0x%016x", 8*word, v)
 	}
 	f.line("GLOBL conjugate<>(SB), RODATA|NOPTR, $32")
+	f.line("")
+	f.line("// Masks of the leading 8 words and of none behind them.")
+	for word := range 16 {
+		f.line("DATA leading<>+%d(SB)/8, $0x%016x", 8*word, []uint64{math.MaxUint64, 0}[word/8])
+	}
+	f.line("GLOBL leading<>(SB), RODATA|NOPTR, $128")
 }

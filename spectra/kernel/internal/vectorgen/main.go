@@ -28,7 +28,7 @@ func source() []byte {
 	f.line("")
 	f.line(`#include "textflag.h"`)
 	constants(f)
-	for _, write := range []func(*file){pass3, pass4, pass5, last2, last4, last8, load, split, outer, power} {
+	for _, write := range []func(*file){pass3, pass4, pass5, last2, last4, last8, load, split, outer, power, misfit, logarithms} {
 		f.line("")
 		write(f)
 	}
