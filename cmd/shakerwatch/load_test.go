@@ -10,14 +10,21 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 	"syscall"
 	"testing"
 	"time"
+
+	"shakerwatch/acquire/decimate"
+	"shakerwatch/acquire/pipe"
+	"shakerwatch/acquire/rig"
+	"shakerwatch/cmd/internal/monitor"
+	"shakerwatch/estimate/watch"
 )
 
-var loadTime = flag.Duration("load", 8*time.Second, "how long each of TestLoad and TestLatency runs; 10m for the figures of DEVELOPERS.md")
+var loadTime = flag.Duration("load", 5*time.Second, "how long each of TestLoad and TestLatency runs; 10m for the figures of DEVELOPERS.md")
 
 // The load: 4 forces and 60 responses at 48 kHz.
 const (
@@ -37,7 +44,9 @@ var loads = []struct {
 
 // TestLoad has a simulated device of 64 channels at 48 kHz send frames through a pipe in real time,
 // recorded on the way. No frame and no block may be lost. It prints the share of one core and the
-// memory that the program takes.
+// memory that the program takes. To repeat its figures and those of TestLatency:
+//
+//	go test ./cmd/shakerwatch -run 'TestLoad|TestLatency' -count=1 -v -timeout 15m -args -load 60s
 func TestLoad(t *testing.T) {
 	for _, l := range loads {
 		t.Run(l.name, func(t *testing.T) { testLoad(t, l.bandHz, l.lineSpacingHz) })
@@ -93,6 +102,111 @@ func testLoad(t *testing.T, bandHz, lineSpacingHz float64) {
 		t.Error(text.String())
 	}
 }
+
+// TestLatency has the same frames come through a pipe into a pipeline of this process. No block may be lost,
+// or averaged before all was there that it waits for: itself, the decimator's half length behind it and, once the watch
+// judges, the blocks of its probation. It prints how long after its own last frame, and after the last one
+// that it waits for, a block was in the average.
+//
+// The source counts as one that can wait, so that a machine that is too slow, as with -race, shows in
+// the latency and loses nothing.
+func TestLatency(t *testing.T) {
+	for _, l := range loads {
+		t.Run(l.name, func(t *testing.T) {
+			r, err := rig.Read(loadRig(t, t.TempDir(), l.bandHz, l.lineSpacingHz))
+			if err != nil {
+				t.Fatal(err)
+			}
+			written, averaged := runLoad(t, r)
+			fromLast, fromAwaited := latencies(t, r, written, averaged)
+			slices.Sort(fromLast)
+			slices.Sort(fromAwaited)
+			n := len(fromAwaited)
+			t.Logf("band %g Hz, blocks of %d, a hop of %.4g ms: %d blocks in the average %v after their last frame (median; at most %v), %v after the last frame that it waits for (90 %% within %v, at most %v)",
+				l.bandHz, r.Grid.Block, 1e3*float64(r.Grid.Hop)/r.Grid.RateHz, n, fromLast[n/2].Round(100*time.Microsecond),
+				fromLast[n-1].Round(100*time.Microsecond), fromAwaited[n/2].Round(10*time.Microsecond),
+				fromAwaited[n*9/10].Round(10*time.Microsecond), fromAwaited[n-1].Round(10*time.Microsecond))
+		})
+	}
+}
+
+// loadFrames are written at a time, a hundredth of a second of them.
+const loadFrames = loadRateHz / 100
+
+// runLoad runs the load for a while and returns when each hundredth of a second was written, and when each
+// block was averaged.
+func runLoad(t *testing.T, r *rig.Rig) (written, averaged []time.Time) {
+	t.Helper()
+	from, to, err := os.Pipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	done := make(chan struct{})
+	go func() {
+		defer close(done)
+		defer to.Close()
+		second := loadSecond()
+		ticks := time.NewTicker(time.Second / 100)
+		defer ticks.Stop()
+		for n := 0; n < int(*loadTime/(time.Second/100)); n++ {
+			<-ticks.C
+			written = append(written, time.Now())
+			if _, err := to.Write(second[n%100*4*loadChannels*loadFrames:][:4*loadChannels*loadFrames]); err != nil {
+				t.Error(err)
+				return
+			}
+		}
+	}()
+	result, err := monitor.Run(t.Context(), monitor.Config{
+		Rig:    r,
+		Source: pipe.New(from, loadRateHz, loadChannels, pipe.F32),
+		OnProgress: func(c monitor.Counts) {
+			for int64(len(averaged)) < c.Averaged {
+				averaged = append(averaged, time.Now())
+			}
+		},
+	})
+	from.Close()
+	<-done
+	if err != nil {
+		t.Fatal(err)
+	}
+	if result.Gaps != 0 || result.SetAside != 0 {
+		t.Fatalf("gaps %d, blocks set aside %d of %d", result.Gaps, result.SetAside, result.Seen)
+	}
+	return written, averaged
+}
+
+// latencies are how long after its last frame, and after the last one that it waits for, each block was
+// averaged. Blocks that the end let go are left out.
+func latencies(t *testing.T, r *rig.Rig, written, averaged []time.Time) (fromLast, fromAwaited []time.Duration) {
+	t.Helper()
+	d := r.Grid.Decimation
+	unjudged := watchArms(len(r.Forces))
+	for k, at := range averaged {
+		last := (k*r.Grid.Hop+r.Grid.Block)*d - 1
+		awaited := last + decimate.HalfLength(d)
+		if k >= unjudged {
+			awaited += watch.Delay(r) * r.Grid.Hop * d
+		}
+		if awaited/loadFrames >= len(written) {
+			break
+		}
+		if at.Before(written[awaited/loadFrames]) {
+			t.Errorf("block %d was averaged before a frame that it waits for", k)
+		}
+		fromLast = append(fromLast, at.Sub(written[last/loadFrames]))
+		fromAwaited = append(fromAwaited, at.Sub(written[awaited/loadFrames]))
+	}
+	if len(fromLast) < 2 {
+		t.Fatalf("%d blocks averaged before the end", len(fromLast))
+	}
+	return fromLast, fromAwaited
+}
+
+// watchArms is how many blocks are averaged at once: the watch judges only with so many in the
+// average (README.md, Blocks set aside).
+func watchArms(forces int) int { return max(8, 3*forces) }
 
 // loadRig writes the rig file of the load.
 func loadRig(t *testing.T, dir string, bandHz, lineSpacingHz float64) string {

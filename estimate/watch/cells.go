@@ -28,6 +28,9 @@ func (c cells) judged(count int, ended bool) int {
 // perCell is how many lines are judged in a cell.
 func (c cells) perCell() float64 { return float64(cellLines / c.stride) }
 
+// every is the number of lines when only each stride-th is counted from the first on.
+func (c cells) every() int { return (c.lines() + c.stride - 1) / c.stride }
+
 // lines is the number of judged lines, 0 when the band is empty.
 func (c cells) lines() int { return max(0, c.last-c.first+1) }
 

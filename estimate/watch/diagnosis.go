@@ -19,6 +19,7 @@ type diagnosis struct {
 	follower *follower
 
 	driven  []bool    // by force: a fit to its driving point can tell a passive force from it
+	passive uint64    // forces that are driven in the average and only answer in this block, a bit each
 	before  []float64 // (o, cell) sums of u of the block before, if another was abnormal
 	another bool
 	ratio   float64   // by which t was divided then
@@ -36,9 +37,6 @@ const (
 	// lostDeadDB is by how much further a force must fall, or may rise, to be called by the other name once it has
 	// one: near the limit either is right, but not both in turn.
 	lostDeadDB = 4
-
-	// fellDB is from where on a force that only answers is lost. Above, it has hardly changed.
-	fellDB = -3
 
 	// leastShare is the share of the excess that leaving a force out must take away if that force is what does
 	// not arrive, and deniedShare how much of it may be denied by responses that follow the force well.
@@ -73,11 +71,13 @@ func (d *diagnosis) read(block int64) (normal bool) {
 	for i := range d.layout.q {
 		d.level = d.level || d.block.levels.changed(i)
 	}
+	d.passives()
 	d.fresh, d.steady = true, true
-	if normal && !d.level {
+	normal = normal && !d.level && d.passive == 0
+	if normal {
 		d.another = false
 	}
-	return normal && !d.level
+	return normal
 }
 
 // find appends what explains an abnormal block, beside what w knows already.
@@ -87,14 +87,18 @@ func (d *diagnosis) find(dst []finding, w *Watch) []finding {
 	copy(d.before, d.scan.now)
 	d.another, d.ratio = true, d.block.ratio
 	lost := d.lost(w)
-	if lost == 1<<d.layout.q-1 {
+	if lost|d.passive == 1<<d.layout.q-1 {
 		return append(dst, d.noDrive())
 	}
 	for i := range d.layout.q {
-		if lost>>i&1 != 0 {
+		switch {
+		case lost>>i&1 != 0:
 			dst = append(dst, finding{kind: ForceLost, key: i, channels: []int{i}})
+		case d.passive>>i&1 != 0:
+			dst = append(dst, lostFollower(i))
 		}
 	}
+	lost |= d.passive
 	d.accuse(dead)
 	if len(d.accused) == 0 {
 		return d.levels(dst, lost)
@@ -178,60 +182,51 @@ func (d *diagnosis) lasting() bool {
 	return change >= -cells*dyingDB*min(1, 2/float64(d.layout.overlap))
 }
 
-// levels explains a block whose responses follow as they should.
-func (d *diagnosis) levels(dst []finding, lost uint64) []finding {
-	f := finding{kind: LevelChanged}
-	var sum float64
-	for i, db := range d.block.levels.db {
-		switch {
-		case !d.block.levels.changed(i) || lost>>i&1 != 0:
-		case db < fellDB && d.driven[i] && d.block.passiveShareOf(i) > passiveShare:
-			dst = append(dst, lostFollower(i))
-		case db < fellDB && d.layout.driving[i] < 0 && d.layout.q > 1:
-			told, follows := d.follower.add(i, d.block.lines, d.at, d.perBlock)
-			if !told {
-				return dst
-			}
-			if follows {
-				dst = append(dst, lostFollower(i))
-				break
-			}
-			fallthrough
-		default:
-			f.channels = append(f.channels, i)
-			sum += db
-		}
-	}
-	if len(dst) == 0 && len(f.channels) > 0 {
-		f.value = sum / float64(len(f.channels))
-		dst = append(dst, f)
-	}
-	return dst
-}
-
-func lostFollower(i int) finding {
-	return finding{kind: ForceLost, key: i, channels: []int{i}, detail: " and only follows the others"}
-}
-
 // reaching finds the forces that the structure does not follow, and leaves in accused what remains
 // without them.
 func (d *diagnosis) reaching(dst []finding, lost uint64, dead []bool) []finding {
 	var mask uint64
+	if lost != 0 && d.idle(lost) {
+		mask = lost
+		d.leaveOut(mask, dead)
+	}
 	for range d.layout.q {
+		if len(d.accused) == 0 {
+			break
+		}
 		i := d.unreached(mask | lost)
 		if i < 0 {
 			break
 		}
 		mask |= 1 << i
 		dst = append(dst, finding{kind: ForceNotReaching, key: i, channels: []int{i}})
-		d.block.sums(d.scan.now, mask)
-		d.scan.scan()
-		d.accuse(dead)
-		if len(d.accused) == 0 {
-			break
-		}
+		d.leaveOut(mask, dead)
 	}
 	return dst
+}
+
+// leaveOut reads the block anew with some forces left out of the prediction.
+func (d *diagnosis) leaveOut(forces uint64, dead []bool) {
+	d.block.sums(d.scan.now, forces)
+	d.scan.scan()
+	d.accuse(dead)
+}
+
+// idle tells whether what is still measured of lost forces does not arrive: whether leaving them out explains most of the
+// excess of more responses than it denies. A cell that hangs on the shaker's side of a stinger that came off measures its
+// own inertia. A response with a fault of its own has but one say.
+func (d *diagnosis) idle(lost uint64) bool {
+	explained := 0
+	d.block.sums(d.without, lost)
+	for o, r := range d.scan.result {
+		switch left := max(0, d.excess(o)); {
+		case r.blocks > 0 && left <= (1-leastShare)*r.excess:
+			explained++
+		case left > max(0, r.excess):
+			explained--
+		}
+	}
+	return explained > 0
 }
 
 // unreached is the force, other than those left out already, which explains most of the excess by not arriving, or

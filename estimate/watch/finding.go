@@ -10,6 +10,7 @@ type finding struct {
 	cause    Cause
 	value    float64 // what the sentence says in figures: dB, share, seconds; its meaning is the kind's
 	detail   string  // words for the sentence that only the rule knows
+	anew     bool    // it differs so much from what stands that it is said again
 }
 
 // A source is what a kind's rule looks at.

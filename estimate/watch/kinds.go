@@ -224,7 +224,7 @@ var kinds = []kind{
 		standing: func(s said) string { return fmt.Sprintf("%s depend on each other at %s", s.names, s.bands()) },
 	},
 	{
-		name: ForcesCorrelated + ofLate, source: recent, hold: twice, away: awayLooks,
+		name: ForcesCorrelated + ofLate, source: recent, hold: once, away: awayRecent,
 		explainedBy: append([]Kind{DeadChannel, TwinChannels, ForceLost + atStart}, forceFaults...),
 		raised: func(s said) string {
 			return fmt.Sprintf("%s began to depend on each other at %s, about %s. If the drive signals are the same now, make them independent and start the average over.", s.names, s.bands(), s.since())

@@ -4,11 +4,13 @@ import (
 	"shakerwatch/acquire/rig"
 	"shakerwatch/estimate"
 	"shakerwatch/spectra"
+	"shakerwatch/spectra/kernel"
 )
 
 // A layout is what the rules need to know of the rig.
 type layout struct {
 	q, p      int // forces, responses
+	rows      int // responses, in whole groups of lanes
 	names     []string
 	points    []string  // by channel, of the structure
 	driving   []int     // by force: its driving-point response, or -1
@@ -44,6 +46,7 @@ func newLayout(r *rig.Rig) *layout {
 	l := &layout{
 		q:           len(r.Forces),
 		p:           len(r.Responses),
+		rows:        kernel.Whole(len(r.Responses)),
 		driving:     r.DrivingPoints(),
 		cells:       newCells(target.First, last, stride),
 		spacingHz:   r.Grid.SpacingHz,

@@ -11,6 +11,7 @@ type levels struct {
 	noise  []float64 // (line of the grid, channel) densities, nil without a noise measurement
 
 	db      []float64 // by force: level against the expected one
+	moved   []bool    // by force: that differs too much to be chance
 	ofNoise []bool    // by force: within 10 dB of its noise
 	ratio   float64   // highest power ratio of a force against the average
 	ref     []float64 // by force: expected level, dB against the average
@@ -29,6 +30,10 @@ const (
 	levelStep     = 2
 	levelScatters = 7
 
+	// stillMoved is the share of that from which a level that had changed in the block before still has: one near the
+	// limit is not to come and go.
+	stillMoved = 0.6
+
 	// levelGroup is how many lines give one value of a force's level; the level is the median over these,
 	// so that hum and a single resonance have no say.
 	levelGroup = 64
@@ -43,6 +48,7 @@ func newLevels(l *layout) levels {
 	return levels{
 		layout:  l,
 		db:      make([]float64, l.q),
+		moved:   make([]bool, l.q),
 		ofNoise: make([]bool, l.q),
 		ref:     make([]float64, l.q),
 		groups:  make([]float64, max(1, n/levelGroup)),
@@ -54,24 +60,30 @@ func newLevels(l *layout) levels {
 func (l *levels) take(m *model, lines []complex128) {
 	l.ratio = 0
 	for i := range l.db {
-		relative := l.median(m, lines, i, func(n int) float64 { return m.gxx[n*l.layout.q+i] })
+		relative := l.median(lines, i, m.gxx[i:], l.layout.q)
 		if l.adrift {
 			l.ref[i] = powerDB(relative)
 		}
 		l.db[i] = powerDB(relative) - l.ref[i]
+		limit := l.limit
+		if l.moved[i] {
+			limit *= stillMoved
+		}
+		l.moved[i] = !(math.Abs(l.db[i]) <= limit)
 		l.ratio = max(l.ratio, relative)
 		l.ofNoise[i] = false
 		if l.noise != nil {
 			c := l.layout.q + l.layout.p
-			over := l.median(m, lines, i, func(n int) float64 { return l.noise[(l.layout.cells.first+n)*c+i] })
+			over := l.median(lines, i, l.noise[min(l.layout.cells.first*c+i, len(l.noise)):], c)
 			l.ofNoise[i] = over < 10
 		}
 	}
 	l.adrift = false
 }
 
-// median is the median over groups of lines of a force's mean power relative to a density.
-func (l *levels) median(m *model, lines []complex128, i int, density func(n int) float64) float64 {
+// median is the median over groups of lines of a force's mean power relative to the densities at every so many
+// places.
+func (l *levels) median(lines []complex128, i int, densities []float64, every int) float64 {
 	first, total, c := l.layout.cells.first, l.layout.cells.lines(), l.layout.q+l.layout.p
 	groups, stride := len(l.groups), l.layout.cells.stride
 	for g := range l.groups {
@@ -79,7 +91,7 @@ func (l *levels) median(m *model, lines []complex128, i int, density func(n int)
 		lo, hi := g*total/groups, (g+1)*total/groups
 		lo = (lo + stride - 1) / stride * stride
 		for n := lo; n < hi; n += stride {
-			if d := density(n); d > 0 {
+			if d := densities[n*every]; d > 0 {
 				sum += abs2(lines[(first+n)*c+i]) / d
 			}
 		}
@@ -121,16 +133,16 @@ func (l *levels) follow() {
 	}
 }
 
-// accept takes the levels of the block that changed as those to expect.
+// accept takes the levels of the block that changed as those to expect, also of forces that were taken along a little.
 func (l *levels) accept() {
 	for i, db := range l.db {
-		if l.changed(i) {
+		if !math.IsNaN(db) && !math.IsInf(db, 0) {
 			l.ref[i] += db
 		}
 	}
 }
 
 // changed tells whether force i is at another level than expected.
-func (l *levels) changed(i int) bool { return !(math.Abs(l.db[i]) <= l.limit) }
+func (l *levels) changed(i int) bool { return l.moved[i] }
 
 func powerDB(ratio float64) float64 { return 10 * math.Log10(ratio) }

@@ -63,6 +63,7 @@ func (k *looker) look(dst []finding, m *model, s *spectra.Snapshot) []finding {
 	dst = k.unreached(dst)
 	dst = k.polarities(dst)
 	dst = k.reciprocities(dst)
+	k.locked.learn(k.coherence, m.ne)
 	dst = k.correlations(dst)
 	return k.low.find(dst, s)
 }
@@ -76,7 +77,7 @@ func (k *looker) forget() {
 
 // residual is S of response o on line n of the model, and NaN where unknown.
 func (k *looker) residual(n, o int) float64 {
-	weight := float64(k.model.weight[n*k.layout.p+o])
+	weight := float64(k.model.weight[n*k.layout.rows+o])
 	if weight == 0 {
 		return unknown
 	}

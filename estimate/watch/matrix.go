@@ -5,7 +5,8 @@ import (
 	"math/cmplx"
 )
 
-// A lower is the Cholesky factor of a line's Gxx = L L^H, row by row; the upper triangle is not used.
+// A lower is the Cholesky factor of a line's Gxx = L L^H, row by row; the upper triangle is not used. The diagonal, which
+// is real, has its inverse in the imaginary parts, since dividing is slow.
 // Cholesky's error does not depend on how the forces are scaled against each other (Golub and Van
 // Loan, Matrix Computations, 4th ed., 2013, section 4.2).
 type lower struct {
@@ -30,13 +31,14 @@ func (m lower) factor(gxx []complex128) bool {
 			return false
 		}
 		d = math.Sqrt(d)
-		l[j*q+j] = complex(d, 0)
+		inverse := 1 / d
+		l[j*q+j] = complex(d, inverse)
 		for i := j + 1; i < q; i++ {
 			v := gxx[i*q+j]
 			for k := range j {
 				v -= l[i*q+k] * cmplx.Conj(l[j*q+k])
 			}
-			l[i*q+j] = v / complex(d, 0)
+			l[i*q+j] = scaled(inverse, v)
 		}
 	}
 	return true
@@ -48,12 +50,11 @@ func (m lower) forward(b []complex128) {
 		for k := range i {
 			b[i] -= m.l[i*m.q+k] * b[k]
 		}
-		b[i] = divided(b[i], real(m.l[i*m.q+i]))
+		b[i] = scaled(imag(m.l[i*m.q+i]), b[i])
 	}
 }
 
-// divided divides by a real number; the diagonal of L is real.
-func divided(a complex128, by float64) complex128 { return complex(real(a)/by, imag(a)/by) }
+func scaled(by float64, a complex128) complex128 { return complex(by*real(a), by*imag(a)) }
 
 // back replaces b by the solution z of L^H z = b.
 func (m lower) back(b []complex128) {
@@ -61,7 +62,7 @@ func (m lower) back(b []complex128) {
 		for k := i + 1; k < len(b); k++ {
 			b[i] -= cmplx.Conj(m.l[k*m.q+i]) * b[k]
 		}
-		b[i] = divided(b[i], real(m.l[i*m.q+i]))
+		b[i] = scaled(imag(m.l[i*m.q+i]), b[i])
 	}
 }
 
@@ -91,7 +92,7 @@ func (m lower) inverseOwn(column []complex128, j int) (sum float64) {
 		for k := j; k < i; k++ {
 			v -= m.l[i*m.q+k] * column[k]
 		}
-		column[i] = divided(v, real(m.l[i*m.q+i]))
+		column[i] = scaled(imag(m.l[i*m.q+i]), v)
 		sum += abs2(column[i])
 	}
 	return sum

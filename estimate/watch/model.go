@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"shakerwatch/spectra"
+	"shakerwatch/spectra/kernel"
 )
 
 // A model is what the average says the next block will be like. H and S are kept in single precision: with
@@ -16,11 +17,11 @@ type model struct {
 	ne, v float64 // n_e and n_e - q
 	known bool    // Gxx has an inverse on most lines
 
-	h       []complex64  // (line, o, i) H1
-	weight  []float32    // (line, o) what |r|² is multiplied by to give t/v; 0 where unknown
-	factors []complex128 // (line, i, j) of Gxx
-	regular []bool       // (line) Gxx has an inverse
-	gxx     []float64    // (line, i) power density of each force
+	h       *kernel.Matrices // (place of the line, o, i) H1
+	weight  []float32        // (line, row) what |r|² is multiplied by to give t/v; 0 where unknown
+	factors []complex128     // (line, i, j) of Gxx
+	regular []bool           // (line) Gxx has an inverse
+	gxx     []float64        // (line, i) power density of each force
 
 	previous []float64 // (line, i) scratch: gxx before this one
 	row      []complex128
@@ -37,8 +38,8 @@ func newModel(l *layout) *model {
 	n := l.cells.lines()
 	return &model{
 		layout:   l,
-		h:        make([]complex64, n*l.p*l.q),
-		weight:   make([]float32, n*l.p),
+		h:        kernel.NewMatrices(l.cells.stride*l.cells.every(), l.p, l.q),
+		weight:   make([]float32, n*l.rows),
 		factors:  make([]complex128, n*l.q*l.q),
 		regular:  make([]bool, n),
 		gxx:      make([]float64, n*l.q),
@@ -78,25 +79,33 @@ func (m *model) factor(n int) lower {
 func (m *model) learnLine(s *spectra.Snapshot, n int, factor lower) {
 	q, p, k := m.layout.q, m.layout.p, m.layout.cells.first+n
 	for o := range p {
-		weight := &m.weight[n*p+o]
-		h := m.h[(n*p+o)*q : (n*p+o+1)*q]
+		weight := &m.weight[n*m.layout.rows+o]
 		gyy := s.Gyy[k*p+o]
 		if !m.regular[n] || !(gyy > 0) {
 			*weight = 0
-			clear(h)
+			for i := range q {
+				m.h.Set(m.place(n), o, i, 0)
+			}
 			continue
 		}
 		copy(m.row, s.Gyx[(k*p+o)*q:(k*p+o+1)*q])
 		explained := factor.row(m.row)
 		for i, v := range m.row {
-			h[i] = complex64(v)
+			m.h.Set(m.place(n), o, i, complex64(v))
 		}
 		residual := max(gyy-explained, minResidual*gyy) * m.ne / m.v
 		*weight = float32(min(m.layout.density/(residual*m.v), math.MaxFloat32))
 	}
 }
 
+// place is where line n stands in h. Lines that are judged stand one behind the other, since memory is read fastest
+// without gaps.
+func (m *model) place(n int) int {
+	c := m.layout.cells
+	return n%c.stride*c.every() + n/c.stride
+}
+
 // at is H_oi at line n of the model.
 func (m *model) at(n, o, i int) complex128 {
-	return complex128(m.h[(n*m.layout.p+o)*m.layout.q+i])
+	return complex128(m.h.At(m.place(n), o, i))
 }

@@ -1,6 +1,11 @@
 package watch
 
-import "math"
+import (
+	"math"
+	"math/cmplx"
+
+	"shakerwatch/spectra/kernel"
+)
 
 // A block is what a transformed block looks like beside the average: its forces' levels and, per response
 // and cell, the sum of u over the cell's lines,
@@ -18,6 +23,7 @@ type block struct {
 	levels levels
 	gain   []float64    // (line) 1/((1 + h) max(1, power ratio))
 	spread []complex128 // (i, j) mean z z^H
+	share  float64      // from a line's product of z to its part in the mean
 	ratio  float64      // power of the forces over what it is in the average, 1 at least
 	taper  taper
 
@@ -39,10 +45,10 @@ func newBlock(l *layout, m *model, workers int, each func(items int, do func(wor
 	b := &block{
 		layout: l, model: m, levels: newLevels(l), each: each,
 		gain: make([]float64, l.cells.lines()), taper: taper{channels: l.q + l.p},
-		spread: make([]complex128, l.q*l.q),
+		spread: make([]complex128, l.q*l.q), share: l.density * float64(l.cells.stride) / float64(l.cells.lines()),
 	}
 	for range workers {
-		b.product = append(b.product, make([]float64, l.p))
+		b.product = append(b.product, make([]float64, l.rows))
 		b.x = append(b.x, make([]complex128, l.q))
 	}
 	b.chunk = b.sumChunk
@@ -59,6 +65,7 @@ func (b *block) take(lines []complex128) {
 	b.levels.take(b.model, lines)
 	x := b.x[0]
 	clear(b.spread)
+	leverage := 1 / b.model.ne
 	for n := 0; n < len(b.gain); n += l.cells.stride {
 		b.gain[n] = 0
 		if !b.model.regular[n] {
@@ -71,25 +78,36 @@ func (b *block) take(lines []complex128) {
 			power += abs2(z)
 		}
 		power *= l.density
-		b.gain[n] = 1 / (1 + power/b.model.ne)
+		b.gain[n] = 1 / (1 + leverage*power)
 		b.spreadOut(x, power)
 	}
+	for i := range l.q {
+		for j := range i {
+			b.spread[j*l.q+i] = cmplx.Conj(b.spread[i*l.q+j])
+		}
+	}
 	b.ratio = max(1, b.levels.ratio, b.largest())
+	inverse := 1 / b.ratio
 	for n := 0; n < len(b.gain); n += l.cells.stride {
-		b.gain[n] /= b.ratio
+		b.gain[n] *= inverse
 	}
 }
 
 // mostPower bounds what one line adds to the mean below: beyond it lies one line of 10^8.
 const mostPower = 20
 
-// spreadOut adds z z^H of one line, z = L^-1 x being the forces as the average would have them, independent and of
+// spreadOut adds z z^H of one line, j <= i, z = L^-1 x being the forces as the average would have them, independent and of
 // power 1.
 func (b *block) spreadOut(z []complex128, power float64) {
-	share := b.layout.density * float64(b.layout.cells.stride) / float64(len(b.gain)) * min(1, mostPower/max(power, math.SmallestNonzeroFloat64))
+	share := b.share
+	if power > mostPower {
+		share *= mostPower / power
+	}
 	for i, a := range z {
-		for j, c := range z {
-			b.spread[i*len(z)+j] += complex(share*(real(a)*real(c)+imag(a)*imag(c)), share*(imag(a)*real(c)-real(a)*imag(c)))
+		a = scaled(share, a)
+		row := b.spread[i*len(z):][:i+1]
+		for j, c := range z[:i+1] {
+			row[j] += complex(real(a)*real(c)+imag(a)*imag(c), imag(a)*real(c)-real(a)*imag(c))
 		}
 	}
 }
@@ -126,45 +144,32 @@ func (b *block) sumChunk(worker, item int) {
 }
 
 func (b *block) sumCell(product []float64, x []complex128, cell int) {
-	l := b.layout
+	l, m := b.layout, b.model
 	for o := range product {
 		product[o] = 1
 	}
 	lo, hi := l.cells.bounds(cell)
 	for k := lo; k < hi; k += l.cells.stride {
-		line := b.lines[k*(l.q+l.p) : (k+1)*(l.q+l.p)]
-		copy(x, line)
-		for i := range x {
-			if b.without>>i&1 != 0 {
-				x[i] = 0
-			}
-		}
-		b.multiply(product, x, line[l.q:], k-l.cells.first)
+		n := k - l.cells.first
+		line := b.lines[k*(l.q+l.p):][:l.q+l.p]
+		m.h.MultiplyMisfits(product, m.place(n), line[l.q:], b.forces(x, line[:l.q]), m.weight[n*l.rows:][:l.rows], b.gain[n], maxTerm)
 	}
-	for o, v := range product {
-		b.into[o*l.cells.n+cell] = b.model.v * math.Log(v)
+	kernel.Logarithms(product)
+	for o, v := range product[:l.p] {
+		b.into[o*l.cells.n+cell] = m.v * v
 	}
 }
 
-// multiply multiplies each response's product by 1 + t/v of line n of the model. Complex products are
-// written out because the language's check for infinities.
-func (b *block) multiply(product []float64, x, y []complex128, n int) {
-	q, p := len(x), len(y)
-	h, weight, gain := b.model.h[n*p*q:(n+1)*p*q], b.model.weight[n*p:(n+1)*p], b.gain[n]
-	product = product[:p]
-	for o, v := range y {
-		re, im := real(v), imag(v)
-		row := h[:len(x)]
-		for i, xi := range x {
-			hr, hi := float64(real(row[i])), float64(imag(row[i]))
-			re -= hr*real(xi) - hi*imag(xi)
-			im -= hr*imag(xi) + hi*real(xi)
-		}
-		h = h[len(x):]
-		t := (re*re + im*im) * float64(weight[o]) * gain
-		if t > maxTerm {
-			t = maxTerm
-		}
-		product[o] *= 1 + t
+// forces are those of a line that the prediction is made of. x is scratch.
+func (b *block) forces(x, line []complex128) []complex128 {
+	if b.without == 0 {
+		return line
 	}
+	copy(x, line)
+	for i := range x {
+		if b.without>>i&1 != 0 {
+			x[i] = 0
+		}
+	}
+	return x
 }

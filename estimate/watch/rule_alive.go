@@ -2,8 +2,9 @@ package watch
 
 import (
 	"cmp"
-	"math"
 	"slices"
+
+	"shakerwatch/spectra/kernel"
 )
 
 // twins finds channels that are constant, and pairs that carry the same signal, in the transform of one
@@ -14,8 +15,9 @@ type twins struct {
 	dead   []bool    // by channel, of the last block
 	key    []float64 // by channel: much the same for the same signal, whatever its gain
 	order  []int     // channels, by key
-	errors []float64
-	found  []bool // by channel: has a twin before it
+	mean   []float64 // by channel: power of a line
+	ratios []float64 // scratch, by line
+	found  []bool    // by channel: has a twin before it
 }
 
 const (
@@ -28,16 +30,22 @@ const (
 	// smallest step in 24 bits stands 8 decades above it.
 	constantPower = 1e-22
 
-	// twinPower is the median error, as a power, with which one channel is another times a constant. Two sensors
-	// on one stiff part differ by more at most frequencies.
-	twinPower = 1e-3
+	// Two inputs with one cable between them differ by a real constant and little else, at every frequency: by twinPower of
+	// a line's power, since their filters are not quite alike (-60 dB is a phase of 0.06 degrees), and by twinFloor of the
+	// channel's mean power, their converters' noise. Two sensors that move in parallel differ by more: by what they
+	// measure at some frequencies, and by their own noise, which is rarely 70 dB down.
+	twinPower, twinFloor = 1e-6, 1e-8
 
-	// exactPower is the same for a force and a response: a force that is lost is the acceleration there times a small
-	// mass, and no twin.
-	exactPower = 1e-12
+	// exactPower and exactFloor are the same for a force and a response: a force that is lost is the acceleration there
+	// times a small mass, and no twin. Samples of 24 bits round to less.
+	exactPower, exactFloor = 1e-12, 1e-13
 
-	// twinKeys is how far apart the keys of two twins can be.
-	twinKeys = 0.1
+	// twinKeys is how far apart the keys of two twins can be. keyFloor, of the mean power, is far above what they
+	// differ by.
+	twinKeys, keyFloor = 0.1, 1e-5
+
+	// leastPower, of a silent channel, has a logarithm.
+	leastPower = 1e-300
 )
 
 func newTwins(l *layout) *twins {
@@ -49,7 +57,7 @@ func newTwins(l *layout) *twins {
 	for i := range n {
 		t.lines = append(t.lines, l.cells.first+(2*i+1)*l.cells.lines()/(2*n))
 	}
-	t.errors = make([]float64, len(t.lines))
+	t.mean, t.ratios = make([]float64, c), make([]float64, len(t.lines))
 	return t
 }
 
@@ -84,55 +92,58 @@ func (t *twins) find(dst []finding, lines []complex128) []finding {
 	return dst
 }
 
-// constant tells whether a channel is, and fills its key: how its power is shared between two sets of lines, in
-// logarithms so that one resonance does not decide.
+// constant tells whether a channel is, and fills its mean power and its key: how its power is shared between two sets
+// of lines, in logarithms so that one resonance does not decide, and above keyFloor so that noise does not.
 func (t *twins) constant(lines []complex128, ch int) bool {
 	c := t.layout.q + t.layout.p
 	at0 := abs2(lines[ch])
-	var key float64
-	constant := true
-	for n, k := range t.lines {
+	constant, sum := true, 0.0
+	for _, k := range t.lines {
 		power := abs2(lines[k*c+ch])
 		constant = constant && power <= constantPower*at0
+		sum += power
+	}
+	t.mean[ch] = sum / float64(len(t.lines))
+	key, floor := 0.0, keyFloor*t.mean[ch]+leastPower
+	for n, k := range t.lines {
+		t.ratios[n] = abs2(lines[k*c+ch]) + floor
+	}
+	kernel.Logarithms(t.ratios)
+	for n, power := range t.ratios {
 		if n%2 == 0 {
-			key += math.Log(power + math.SmallestNonzeroFloat64)
+			key += power
 		} else {
-			key -= math.Log(power + math.SmallestNonzeroFloat64)
+			key -= power
 		}
 	}
 	t.key[ch] = key / float64(len(t.lines))
 	return constant
 }
 
-// hasty is how many lines that disagree are enough to give up, if fewer agreed: of many channels, most pairs
-// must be told apart quickly.
-const hasty = 4
-
-// same tells whether channel b is channel a times a real constant, but for little noise.
+// same tells whether channel b is channel a times a real constant, but for what two inputs differ by. The phase alone
+// tells most pairs apart on the first lines.
 func (t *twins) same(lines []complex128, a, b int) bool {
 	c := t.layout.q + t.layout.p
-	bad := 0
+	power, floor := twinPower, twinFloor
+	if a < t.layout.q && b >= t.layout.q {
+		power, floor = exactPower, exactFloor
+	}
+	floor *= t.mean[b]
 	for n, k := range t.lines {
 		x, y := lines[k*c+a], lines[k*c+b]
 		re, im := real(x)*real(y)+imag(x)*imag(y), imag(y)*real(x)-real(y)*imag(x)
-		if im*im > 4*twinPower*re*re {
-			bad++
-		}
-		if bad >= hasty && 2*bad > n {
+		if !(im*im <= (power*abs2(y)+floor)*abs2(x)) { // |y - g x|² for the best real g
 			return false
 		}
-		t.errors[n] = re / abs2(x)
+		t.ratios[n] = re / abs2(x)
 	}
-	slices.Sort(t.errors)
-	gain := t.errors[len(t.errors)/2]
-	for n, k := range t.lines {
+	slices.Sort(t.ratios)
+	gain := complex(t.ratios[len(t.ratios)/2], 0)
+	for _, k := range t.lines {
 		x, y := lines[k*c+a], lines[k*c+b]
-		t.errors[n] = abs2(y-complex(gain, 0)*x) / abs2(y)
+		if !(abs2(y-gain*x) <= power*abs2(y)+floor) {
+			return false
+		}
 	}
-	slices.Sort(t.errors)
-	limit := twinPower
-	if a < t.layout.q && b >= t.layout.q {
-		limit = exactPower
-	}
-	return t.errors[len(t.errors)/2] < limit
+	return true
 }

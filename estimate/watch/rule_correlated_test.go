@@ -1,6 +1,7 @@
 package watch
 
 import (
+	"math"
 	"slices"
 	"testing"
 )
@@ -54,5 +55,41 @@ func TestCorrelatedBands(t *testing.T) {
 				}
 			}
 		})
+	}
+}
+
+// TestHumIsNarrow: the middle of a wider band that is all that few averages show is no hum, and hum is.
+func TestHumIsNarrow(t *testing.T) {
+	for _, test := range []struct {
+		name   string
+		common func(k int) float64
+		mains  bool
+	}{
+		{"a band around 50 Hz", func(k int) float64 { return max(0, 0.97-0.08*math.Abs(float64(k)-20)) }, false},
+		{"hum at 50 Hz", func(k int) float64 {
+			if k >= 19 && k <= 21 {
+				return 0.95
+			}
+			return 0
+		}, true},
+	} {
+		hum, band := 0, 0
+		for seed := range 20 {
+			for _, n := range []int{16, 18, 20} {
+				d := newDrawn(uint64(*firstSeed+seed), 2, 2, 300)
+				d.common = test.common
+				for _, f := range d.look(n) {
+					switch {
+					case f.kind == ForcesCorrelated && f.cause == CauseMains:
+						hum++
+					case f.kind == ForcesCorrelated:
+						band++
+					}
+				}
+			}
+		}
+		if (hum > 0) != test.mains || (band > 0) == test.mains {
+			t.Errorf("%s: hum %d times, a band %d times", test.name, hum, band)
+		}
 	}
 }

@@ -10,14 +10,19 @@ func (k *looker) passiveForces() []float64 {
 		if o < 0 {
 			continue
 		}
-		shares[i] = l.fit(func(line int) product {
-			at := line*l.p + o
-			return product{
-				aa: s.Gyy[at],
-				xx: real(s.Gxx[(line*l.q+i)*l.q+i]),
-				xa: complex(l.sign[i], 0) * cmplx.Conj(s.Gyx[at*l.q+i]),
+		f := new(passive)
+		for cell := range l.cells.n {
+			lo, hi := l.cells.bounds(cell)
+			var sum product
+			for line := lo; line < hi; line++ {
+				at := line*l.p + o
+				sum.aa += s.Gyy[at]
+				sum.xx += real(s.Gxx[(line*l.q+i)*l.q+i])
+				sum.xa += complex(l.sign[i], 0) * cmplx.Conj(s.Gyx[at*l.q+i])
 			}
-		}).share()
+			f.addCell(l.fraction(cell), sum)
+		}
+		shares[i] = f.share()
 	}
 	return shares
 }

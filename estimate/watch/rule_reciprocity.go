@@ -103,11 +103,22 @@ func (k *looker) sidesOf(n int) []sides {
 			cov:      sa * sb * real(k.crossResidual(n, line)*inverseAB) / k.model.ne,
 			fraction: float64(k.layout.cells.first+line) / float64(k.layout.cells.last),
 		}
+		if k.layout.taper {
+			s.vab *= 1 + k.model.ne*k.unexplained(line, oa)
+			s.vba *= 1 + k.model.ne*k.unexplained(line, ob)
+		}
 		size := abs2(s.ab) + abs2(s.ba)
 		s.significance = size / (size + 4*(s.vab+s.vba))
 		lines = append(lines, s)
 	}
 	return lines
+}
+
+// unexplained is the share of response o that no force explains, 1 - g2. Without a window it is leakage for the most part,
+// which no averaging removes: of the forces' own kind, it biases H as noise would in 1/(1 - g2) averages.
+func (k *looker) unexplained(line, o int) float64 {
+	gyy := k.s.Gyy[(k.layout.cells.first+line)*k.layout.p+o]
+	return min(1, k.residual(line, o)*k.model.v/k.model.ne/gyy)
 }
 
 // crossResidual is the residual cross-density of pair n's driving points, E[r_a r_b*].

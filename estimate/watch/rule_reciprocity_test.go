@@ -130,3 +130,29 @@ func TestSkewIsNoPolarity(t *testing.T) {
 		}
 	}
 }
+
+// TestLeakageIsNoCause: without a window what the forces leave unexplained is leakage, which biases both sides however
+// many blocks are averaged, so it counts for more.
+func TestLeakageIsNoCause(t *testing.T) {
+	d := newDrawn(3, 2, 2, 300)
+	d.noise = 0.2
+	d.bend = func(_, channel int, v complex128) complex128 {
+		if channel == 2 {
+			return 1.12 * v
+		}
+		return v
+	}
+	mean := map[bool]float64{}
+	s := d.snapshot(60)
+	for _, taper := range []bool{false, true} {
+		l := newLayout(d.rig)
+		l.taper = taper
+		m, k := newModel(l), newLooker(d.rig, l, nil)
+		m.learn(s)
+		k.model, k.s = m, s
+		mean[taper], _ = k.disagreement(k.sidesOf(0), 1, 0)
+	}
+	if !(mean[true] < 0.7*mean[false]) {
+		t.Errorf("mean of u %.2f without a window, %.2f with one", mean[true], mean[false])
+	}
+}

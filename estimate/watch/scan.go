@@ -10,8 +10,8 @@ type scan struct {
 	spare  []*sums
 	now    []float64 // (o, cell)
 
-	result []reading // by response
-	worker [][]float64
+	result []reading  // by response
+	worker []prefixes // scratch
 	each   func(items int, do func(worker, item int))
 	one    func(worker, item int)
 }
@@ -39,12 +39,16 @@ type reading struct {
 var windowCells = []int{2, 8, 32}
 
 // blockCounts are over how many of the last blocks is summed.
-var blockCounts = []int{1, 2, longest}
+var blockCounts = [...]int{1, 2, longest}
 
 func newScan(l *layout, workers int, each func(items int, do func(worker, item int))) *scan {
 	s := &scan{layout: l, result: make([]reading, l.p), now: make([]float64, l.p*l.cells.n), each: each}
 	for range workers {
-		s.worker = append(s.worker, make([]float64, (l.cells.n+1)*len(blockCounts)))
+		var p prefixes
+		for b := range p {
+			p[b] = make([]float64, l.cells.n+1)
+		}
+		s.worker = append(s.worker, p)
 	}
 	for range longest {
 		s.spare = append(s.spare, &sums{u: make([]float64, l.p*l.cells.n)})
@@ -88,28 +92,53 @@ func (s *scan) lastOf(j int) *sums { return s.recent[len(s.recent)-j] }
 
 func (s *scan) scanOne(worker, o int) {
 	n := s.layout.cells.n
-	prefix := s.worker[worker][:n+1]
+	prefix := &s.worker[worker]
 	r := &s.result[o]
 	*r = reading{}
 	u := s.now[o*n : (o+1)*n]
-	var sum float64
-	for c, v := range u {
-		sum += v
-		prefix[c+1] = sum
-	}
-	r.excess = sum - float64(s.layout.cells.judged(n, true))
-	for b, blocks := range blockCounts {
-		if blocks-1 > len(s.recent) {
-			return
-		}
-		for j := blockCounts[max(0, b-1)]; j < blocks; j++ {
-			s.addRecent(prefix, s.lastOf(j).u[o*n:(o+1)*n])
-		}
-		if hit, lo, hi := exceeding(prefix, s.limits[b]); hit {
+	known := s.together(prefix, o)
+	prefix.sumUp()
+	r.excess = prefix[0][n] - float64(s.layout.cells.judged(n, true))
+	for b, blocks := range blockCounts[:known] {
+		if hit, lo, hi := exceeding(prefix[b], s.limits[b]); hit {
 			r.blocks = blocks
 			r.fresh = freshIn(u[lo:hi], s.layout.cells.judged(hi-lo, hi == n))
 			return
 		}
+	}
+}
+
+// together puts into dst what the cells of response o hold in the last blocks together, from the second place on, for
+// those counts of blocks, as many as it returns, for which there are enough.
+func (s *scan) together(dst *prefixes, o int) (known int) {
+	n := s.layout.cells.n
+	copy(dst[0][1:], s.now[o*n:(o+1)*n])
+	for known = 1; known < len(blockCounts) && blockCounts[known]-1 <= len(s.recent); known++ {
+		to := dst[known][1:]
+		copy(to, dst[known-1][1:])
+		for j := blockCounts[known-1]; j < blockCounts[known]; j++ {
+			for c, v := range s.lastOf(j).u[o*n:][:len(to)] {
+				to[c] += v
+			}
+		}
+	}
+	return known
+}
+
+// prefixes are, for each count of blocks, the sums over all cells before one: from 0 to all.
+type prefixes [len(blockCounts)][]float64
+
+// sumUp makes prefixes of the cells' own sums, which stand from the second place on. All counts go side by side, for each
+// sum waits for the one before it.
+func (p *prefixes) sumUp() {
+	a, b, c := p[0], p[1][:len(p[0])], p[2][:len(p[0])]
+	a[0], b[0], c[0] = 0, 0, 0
+	var sumA, sumB, sumC float64
+	for n := range a {
+		sumA += a[n]
+		sumB += b[n]
+		sumC += c[n]
+		a[n], b[n], c[n] = sumA, sumB, sumC
 	}
 }
 
@@ -130,10 +159,33 @@ func freshIn(u []float64, lines int) bool {
 	return sum > leastMean*float64(lines)
 }
 
-// exceeding is the window that exceeds its limit by the largest factor.
+// exceeding is the window that exceeds its limit by the largest factor. In nearly all readings there is none, which is
+// soon seen.
 func exceeding(prefix []float64, limits []windowLimit) (hit bool, lo, hi int) {
+	for _, w := range limits {
+		if w.exceeded(prefix) {
+			return worst(prefix, limits)
+		}
+	}
+	return false, 0, 0
+}
+
+// exceeded tells whether any window of this size exceeds its limit.
+func (w windowLimit) exceeded(prefix []float64) bool {
+	ends := prefix[w.cells:]
+	last := len(ends) - 1
+	for at := 0; at < last; at += w.step {
+		if ends[at]-prefix[at] > w.limit {
+			return true
+		}
+	}
+	return ends[last]-prefix[last] > w.ended
+}
+
+// worst is exceeding in full.
+func worst(prefix []float64, limits []windowLimit) (hit bool, lo, hi int) {
 	n := len(prefix) - 1
-	worst := 1.0
+	most := 1.0
 	for _, w := range limits {
 		for at := 0; ; at += w.step {
 			at = min(at, n-w.cells)
@@ -141,8 +193,8 @@ func exceeding(prefix []float64, limits []windowLimit) (hit bool, lo, hi int) {
 			if at == n-w.cells {
 				limit = w.ended
 			}
-			if sum := prefix[at+w.cells] - prefix[at]; sum > worst*limit {
-				worst, hit, lo, hi = sum/limit, true, at, at+w.cells
+			if sum := prefix[at+w.cells] - prefix[at]; sum > most*limit {
+				most, hit, lo, hi = sum/limit, true, at, at+w.cells
 			}
 			if at == n-w.cells {
 				break
@@ -162,7 +214,7 @@ func (s *scan) mark(dst []bool, o int) (share float64) {
 	if r.blocks == 0 {
 		return 0
 	}
-	prefix := s.worker[0][:n+1]
+	prefix := s.worker[0][0]
 	clear(prefix)
 	s.addRecent(prefix, s.now[o*n:(o+1)*n])
 	b := 0

@@ -111,6 +111,8 @@ func TestTwoFaults(t *testing.T) {
 	}{
 		{"stinger, then sensor", func(r *run) { r.off[1] = shakerOff }, func(r *run) { r.gain[r.q+4] = 0.3 },
 			[]string{"force-lost raised", "response-suspect raised"}},
+		{"stinger off at the structure, then sensor", func(r *run) { r.off[1] = padOff }, func(r *run) { r.gain[r.q+4] = 0.3 },
+			[]string{"force-lost raised", "response-suspect raised"}},
 		{"pad, then sensor", func(r *run) { r.off[1], r.tip = padOff, 0.25 }, func(r *run) { r.gain[r.q+4] = 0.3 },
 			[]string{"force-not-reaching raised", "response-suspect raised"}},
 		{"sensor, then sensor", func(r *run) { r.gain[r.q+5] = 0.3 }, func(r *run) { r.gain[r.q+4] = 0.3 },

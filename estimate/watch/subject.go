@@ -1,6 +1,9 @@
 package watch
 
-import "slices"
+import (
+	"fmt"
+	"slices"
+)
 
 // A subject is one thing that may be wrong: a kind and what it is about. It goes from pending to standing when it was
 // found often enough in a row, and is cleared after it stayed away for long enough.
@@ -28,6 +31,7 @@ func (s *subject) isFault() bool { return s.kind.fault && s.cause != CauseLocal 
 // what is raised now; ripe tells whether the block is one to raise on.
 func (w *Watch) update(events []Event, from source, found []finding, e Evidence, since int64, ripe bool) []Event {
 	for n := range found {
+		events = w.renew(events, &found[n], e)
 		w.enter(&found[n], since, e)
 	}
 	for i := range w.subjects {
@@ -71,7 +75,9 @@ func (w *Watch) enter(f *finding, since int64, e Evidence) {
 			continue // raised only: what stands is a memory of an earlier one
 		case s.state == stands:
 			s.count = 0
-			s.channels = union(s.channels, f.channels)
+			if s.kind.name != ForcesCorrelated+ofLate { // who began is who began first
+				s.channels = union(s.channels, f.channels)
+			}
 		case f.alike(&s.finding):
 			s.count++
 			s.finding = *f
@@ -88,15 +94,33 @@ func (w *Watch) enter(f *finding, since int64, e Evidence) {
 	w.subjects = append(w.subjects, subject{kind: k, count: count, since: since, sinceS: w.timeOf(since, e), finding: *f})
 }
 
+// renew clears what stands and is to be said anew, so that it is raised with the same block.
+func (w *Watch) renew(events []Event, f *finding, e Evidence) []Event {
+	if !f.anew {
+		return events
+	}
+	for i := range w.subjects {
+		s := &w.subjects[i]
+		if s.kind.name != f.kind || s.key != f.key || s.state != stands {
+			continue
+		}
+		events = w.clear(events, s, e)
+		s.state, s.count, s.finding = pending, s.kind.hold(w.layout.overlap), *f
+	}
+	return events
+}
+
 // levelAlike is how much two blocks of one level may differ, dB.
 const levelAlike = 1.5
 
-// alike tells whether f goes on with what g said. A level that is on its way is at no new level yet.
+// alike tells whether f goes on with what g said. A level that is on its way is at no new level yet. Who changed besides
+// the one that did most may be near the limit.
 func (f *finding) alike(g *finding) bool {
-	if f.kind == LevelChanged {
-		return f.value-g.value < levelAlike && g.value-f.value < levelAlike && slices.Equal(f.channels, g.channels)
+	if f.kind != LevelChanged {
+		return true
 	}
-	return true
+	shared := slices.ContainsFunc(f.channels, func(ch int) bool { return slices.Contains(g.channels, ch) })
+	return f.value-g.value < levelAlike && g.value-f.value < levelAlike && shared
 }
 
 // miss notes that a subject was not found.
@@ -121,7 +145,12 @@ func (w *Watch) miss(events []Event, s *subject, e Evidence) []Event {
 
 func (w *Watch) clear(events []Event, s *subject, e Evidence) []Event {
 	s.state = over
-	return append(events, w.event(s, e, Cleared, s.kind.cleared(w.said(s, e))))
+	said := w.said(s, e)
+	text := s.kind.cleared(said)
+	if s.kind.source == armed && s.kind.name != NoDrive && w.stands(NoDrive, 0) {
+		text = fmt.Sprintf("%s: no shaker drives the structure now, so this shows no more.", said.names)
+	}
+	return append(events, w.event(s, e, Cleared, text))
 }
 
 // promote raises a subject whose time has come, unless another kind explains it.

@@ -228,11 +228,11 @@ func (w *Watch) compare(events []Event, e Evidence, j Judgement) ([]Event, Judge
 // lately looks at how the forces depend on each other in the last normal blocks.
 func (w *Watch) lately(events []Event, e Evidence) []Event {
 	k := w.looker
-	if !k.locked.add(w.block.lines) {
+	if !k.locked.add(e.Lines) { // without a taper, as the average is
 		return events
 	}
-	w.found = k.locked.find(w.found[:0], w.diagnose.perBlock, k.correlated.groups)
-	return w.update(events, recent, w.found, e, max(w.first, e.Block-recentFrom+1), true)
+	w.found = k.locked.find(w.found[:0], w.diagnose.perBlock)
+	return w.update(events, recent, w.found, e, max(w.first, e.Block-k.locked.since()), true)
 }
 
 // explained tells whether all that was found stands already.
