@@ -33,9 +33,9 @@ check: $(ECHARTS) tools
 	$(GO) mod verify
 
 # Debian packages that the tests need: a browser for the page, NumPy and SciPy for the references,
-# PortAudio for sound cards, and a sound server that stands in for one.
+# PortAudio for sound cards, and a sound server that stands in for one; a C compiler and FFTW for the benchmark.
 PACKAGES := chromium fonts-dejavu-core python3-numpy python3-scipy \
-	portaudio19-dev pulseaudio pulseaudio-utils libasound2-plugins
+	portaudio19-dev pulseaudio pulseaudio-utils libasound2-plugins gcc libc6-dev libfftw3-dev
 tools:
 	@dpkg-query -W -f '$${db:Status-Status}\n' $(PACKAGES) 2>/dev/null | grep -cx installed | grep -qx $(words $(PACKAGES)) || { \
 		$(SUDO) apt-get update -q && \
@@ -68,7 +68,9 @@ screenshots: $(ECHARTS) tools
 	@mkdir -p static/readme
 	$(GO) test ./cmd/shakerwatch -count=1 -run TestDemoInABrowser -args -pictures $(CURDIR)/static/readme
 
-bench: $(ECHARTS)
+# The whole job beside NumPy and C with FFTW, then the benchmarks of all rooms.
+bench: $(ECHARTS) tools
+	$(GO) run ./cmd/bench
 	$(GO) test -run '^$$' -bench . -benchmem ./...
 
 clean:
