@@ -19,7 +19,7 @@ func TestBreakingInABrowser(t *testing.T) {
 	p := start(t)
 	w := pagetest.Open(t, p.address)
 	w.Until(`document.getElementById("word").textContent === "AVERAGING"`)
-	drawn(w, 14) // the watch is armed
+	drawn(w, 14)                                           // the watch is armed
 	w.Choose("#try select[aria-label='what breaks']", "0") // stinger off
 	w.Choose("#try select[aria-label='where']", "S2")
 	w.Click("#try .strong")
