@@ -62,9 +62,11 @@ func bands(e watch.Event) [][2]estimate.Number {
 }
 
 // same tells whether e is about s. Two of a kind can begin with the same block and accuse different
-// channels; while one stands, more channels can join it.
+// channels; while one stands, more channels can join it. Hum and another dependence of the same forces
+// stand side by side.
 func (s standingEvent) same(e watch.Event) bool {
-	if s.kind != e.Kind || s.since != e.SinceBlock {
+	hum := func(c watch.Cause) bool { return c == watch.CauseMains }
+	if s.kind != e.Kind || s.since != e.SinceBlock || hum(s.cause) != hum(e.Cause) {
 		return false
 	}
 	shared := func(name string) bool { return slices.Contains(e.Channels, name) }

@@ -62,3 +62,17 @@ func TestWhatStandsIsBounded(t *testing.T) {
 		t.Errorf("%d events", len(s.events))
 	}
 }
+
+func TestHumStandsByItself(t *testing.T) {
+	var s standing
+	band := watch.Event{Kind: watch.ForcesCorrelated, Edge: watch.Raised, Channels: []string{"S1", "S2"}}
+	hum := band
+	hum.Cause = watch.CauseMains
+	s.take(band)
+	s.take(hum)
+	hum.Edge = watch.Cleared
+	s.take(hum)
+	if len(s.events) != 1 || s.events[0].cause != "" {
+		t.Errorf("what stands when the hum is over: %+v", s.events)
+	}
+}

@@ -10,6 +10,7 @@ import (
 
 	"shakerwatch/acquire/demo"
 	"shakerwatch/acquire/rig"
+	"shakerwatch/estimate/watch"
 )
 
 // A planned fault is one drawn on a rig, with what is to be said about it.
@@ -56,7 +57,17 @@ func newPlan(s *scenario, seed uint64) (*plan, error) {
 	for n, f := range p.scenario.faults {
 		p.draw(rng, &p.faults[n], f)
 	}
+	p.allLost()
 	return p, nil
+}
+
+// allLost adds what is right when the faults of a run took one force after the other.
+func (p *plan) allLost() {
+	left := slices.ContainsFunc(names(p.rig.Forces), func(name string) bool { return !p.taken(name) })
+	if n := len(p.faults); n > 1 && !left {
+		f := &p.faults[n-1]
+		f.answers = append(f.answers, answer{kind: watch.NoDrive, who: allForces, why: "no force is left"})
+	}
 }
 
 func labelled(name string) uint64 {

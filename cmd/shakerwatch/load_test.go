@@ -70,15 +70,14 @@ func testLoad(t *testing.T, bandHz, lineSpacingHz float64) {
 	if err := cmd.Start(); err != nil {
 		t.Fatal(err)
 	}
-	second := loadSecond()
+	next := loadNoise()
 	ticks := time.NewTicker(time.Second / 100)
 	defer ticks.Stop()
 	start := time.Now()
 	var early, late float64
-	for n := 0; time.Since(start) < *loadTime; n++ {
+	for time.Since(start) < *loadTime {
 		<-ticks.C
-		hundredth := len(second) / 100
-		if _, err := stdin.Write(second[n%100*hundredth : (n%100+1)*hundredth]); err != nil {
+		if _, err := stdin.Write(next()); err != nil {
 			t.Fatal(err)
 		}
 		if late = residentMiB(t, cmd.Process.Pid); time.Since(start) < *loadTime/4 {
@@ -145,13 +144,13 @@ func runLoad(t *testing.T, r *rig.Rig) (written, averaged []time.Time) {
 	go func() {
 		defer close(done)
 		defer to.Close()
-		second := loadSecond()
+		next := loadNoise()
 		ticks := time.NewTicker(time.Second / 100)
 		defer ticks.Stop()
-		for n := 0; n < int(*loadTime/(time.Second/100)); n++ {
+		for range *loadTime / (time.Second / 100) {
 			<-ticks.C
 			written = append(written, time.Now())
-			if _, err := to.Write(second[n%100*4*loadChannels*loadFrames:][:4*loadChannels*loadFrames]); err != nil {
+			if _, err := to.Write(next()); err != nil {
 				t.Error(err)
 				return
 			}
@@ -227,14 +226,18 @@ func loadRig(t *testing.T, dir string, bandHz, lineSpacingHz float64) string {
 	return path
 }
 
-// loadSecond is a second of made-up noise.
-func loadSecond() []byte {
+// loadNoise gives made-up noise, a hundredth of a second at a time: pieces from anywhere in a second of it, because
+// what repeats is no noise to blocks that are longer.
+func loadNoise() func() []byte {
+	const frameBytes = 4 * loadChannels
 	rng := rand.New(rand.NewPCG(1, 2))
-	raw := make([]byte, 0, 4*loadChannels*loadRateHz)
+	raw := make([]byte, 0, frameBytes*loadRateHz)
 	for range loadChannels * loadRateHz {
 		raw = binary.LittleEndian.AppendUint32(raw, math.Float32bits(float32(rng.Float64()-0.5)))
 	}
-	return raw
+	return func() []byte {
+		return raw[frameBytes*rng.IntN(loadRateHz-loadFrames):][:frameBytes*loadFrames]
+	}
 }
 
 // residentMiB is the memory of a process that is in use.

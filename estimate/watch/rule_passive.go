@@ -32,6 +32,11 @@ func (k *looker) passiveForces() []float64 {
 // and up to 0.2 of the partial coherence with its driving point; a driven one had 0, any, and from 0.75 on.
 const followsShare = 0.3
 
+// A force behind a heavy armature is passive for the most part even when it is driven, and its driving point follows what
+// the other forces leave of it. If that is no drive of its own the fit explains it too, so it leaves no more than the
+// others do, ownPart times, but for fitLeaves, what a fit of so few terms cannot do.
+const ownPart, fitLeaves = 2, 0.03
+
 // followers finds forces that only follow the others in the average: not driven, or with the stinger off, from
 // the start. Correlated drives look alike to the coherence, but not to the fit.
 func (k *looker) followers(dst []finding, passive []float64) []finding {
@@ -40,11 +45,20 @@ func (k *looker) followers(dst []finding, passive []float64) []finding {
 			continue
 		}
 		o, coherence := k.layout.driving[i], k.meanCoherence(i)
-		if min(share, coherence) > passiveShare || coherence > followsShare && k.meanPartial(i, o) < followsShare {
+		if onlyFollows(share, coherence, k.meanPartial(i, o)) {
 			dst = append(dst, finding{kind: ForceLost + atStart, key: i, channels: []int{i}, about: []int{k.layout.q + o}})
 		}
 	}
 	return dst
+}
+
+// onlyFollows judges by the share that the fit explains of a force, its coherence with the others, and its partial
+// coherence with its driving point.
+func onlyFollows(share, coherence, partial float64) bool {
+	if partial < followsShare {
+		return coherence > followsShare
+	}
+	return min(share, coherence) > passiveShare && 1-share < ownPart*(1-coherence)+fitLeaves
 }
 
 // meanCoherence is that of force i with the others over the band, less what chance gives: Beta(q - 1,
