@@ -45,12 +45,14 @@ func newPlan(s *scenario, seed uint64) (*plan, error) {
 	if least := p.scenario.shakers; least > 1 {
 		o.Shakers = least + rng.IntN(4-least+1)
 	}
-	var err error
-	if p.drawn, err = demo.NewRandomRig(rng.Uint64(), o); err != nil {
-		return nil, err
-	}
-	if p.rig, err = p.scenario.setting.apply(p.drawn); err != nil {
-		return nil, err
+	for p.rig == nil || !p.shows() {
+		var err error
+		if p.drawn, err = demo.NewRandomRig(rng.Uint64(), o); err != nil {
+			return nil, err
+		}
+		if p.rig, err = p.scenario.setting.apply(p.drawn); err != nil {
+			return nil, err
+		}
 	}
 	p.grid = gridOf(p.rig)
 	p.lengths(rng)
@@ -59,6 +61,22 @@ func newPlan(s *scenario, seed uint64) (*plan, error) {
 	}
 	p.allLost()
 	return p, nil
+}
+
+// shows tells whether the scenario's faults can be seen on the rig at all. A sensor that is turned cannot, where the structure
+// moves along the next axis as along its own: then it is one of another gain, and often of nearly the same.
+func (p *plan) shows() bool {
+	for _, f := range p.scenario.faults {
+		if f.kind != "tilt" || f.on != aDrivingPoint {
+			continue
+		}
+		shows := false
+		for a := range p.rig.Forces {
+			shows = shows || p.tiltShows(a)
+		}
+		return shows
+	}
+	return true
 }
 
 // allLost adds what is right when the faults of a run took one force after the other.
@@ -145,8 +163,8 @@ func (p *plan) target(rng *rand.Rand, d *planned, o on) (class string) {
 	switch o {
 	case aForce, anotherForce:
 		d.Target, class = pick(forces, 1), onForce
-		if d.Kind == "drive-off" && len(forces) > 1 {
-			d.Target = p.onesThatFall(pick, forces)
+		if far, ok := falls[d.Kind]; ok && len(forces) > 1 {
+			d.Target = p.oneThatFalls(pick, forces, far)
 		}
 		p.atPoint(d, slices.Index(forces, d.Target[0]))
 	case someForces:
@@ -172,13 +190,13 @@ func (p *plan) target(rng *rand.Rand, d *planned, o on) (class string) {
 	return class
 }
 
-// onesThatFall draws a force that falls far when its drive is off, or takes the one that falls most.
-func (p *plan) onesThatFall(pick func(list []string, n int) []string, forces []string) []string {
+// oneThatFalls draws a force that falls far, or takes the one that falls most.
+func (p *plan) oneThatFalls(pick func(list []string, n int) []string, forces []string, far fall) []string {
 	free := slices.DeleteFunc(slices.Clone(forces), p.taken)
 	deepest, name := 0.0, free[0]
 	for _, candidate := range pick(forces, len(free)) {
-		db := p.fallDB(slices.Index(forces, candidate))
-		if db <= fellFarDB {
+		db := p.fallDB(slices.Index(forces, candidate), far.share)
+		if db <= far.farDB {
 			return []string{candidate}
 		}
 		if db < deepest {
@@ -188,29 +206,19 @@ func (p *plan) onesThatFall(pick func(list []string, n int) []string, forces []s
 	return []string{name}
 }
 
-// tiltedPoint is the first force from i on at whose driving point a turned sensor makes some pair disagree by more than a
-// factor, and notes of which pairs a factor may be said. Where there is none it is i.
+// tiltedPoint is the first force from i on at whose driving point a turned sensor shows. It notes with which forces a factor
+// may be said.
 func (p *plan) tiltedPoint(d *planned, i int) int {
 	q := len(p.rig.Forces)
-	for n := range q {
-		a, sure := (i+n)%q, false
-		var factors []string
-		for b := range q {
-			if b == a {
-				continue
-			}
-			effect := p.tiltOf(a, b)
-			sure = sure || effect == local
-			if effect != local {
-				factors = append(factors, p.rig.Forces[b].Name)
-			}
-		}
-		if sure || n == q-1 {
-			d.factors = factors
-			return a
+	for !p.tiltShows(i % q) {
+		i++
+	}
+	for b, c := range p.rig.Forces {
+		if b != i%q && p.tiltOf(i%q, b) != local {
+			d.factors = append(d.factors, c.Name)
 		}
 	}
-	return i
+	return i % q
 }
 
 // taken tells whether a fault has a channel already.

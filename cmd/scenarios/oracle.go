@@ -22,39 +22,43 @@ func (p *plan) bandLines() (hz []float64) {
 	return hz
 }
 
-// fellFarDB is the fall from which a force that is not driven has fallen far. Above, the other shakers make it nearly what it
+// A fall is by how much a force must fall so that something is to be said: less, and the other shakers make it nearly what it
 // was, the structure follows it, and nothing is wrong with the blocks.
-const fellFarDB = -6
+type fall struct {
+	share float64 // of the drive's amplitude that is left
+	farDB float64
+}
 
-// fallDB is by how much force i falls when its drive is off, in the median over the band.
-func (p *plan) fallDB(i int) float64 {
+var falls = map[string]fall{
+	"drive-off": {0, -6},   // fell far
+	"level":     {0.5, -3}, // the usual -6 dB; 2 dB stand out of the scatter of a block, by the project's method
+}
+
+// fallDB is by how much force i falls when a share of its drive is left, in the median over the band.
+func (p *plan) fallDB(i int, share float64) float64 {
 	truth, q := p.drawn.Truth(), len(p.rig.Forces)
 	shares := slices.Repeat([]float64{1}, q)
-	shares[i] = 0
-	var falls []float64
+	shares[i] = share
+	var list []float64
 	for _, hz := range p.bandLines() {
 		on, off := truth.ForceDensities(nil, hz, nil), truth.ForceDensities(nil, hz, shares)
-		falls = append(falls, 10*math.Log10(real(off[i*q+i])/real(on[i*q+i])))
+		list = append(list, 10*math.Log10(real(off[i*q+i])/real(on[i*q+i])))
 	}
-	slices.Sort(falls)
-	return falls[len(falls)/2]
+	slices.Sort(list)
+	return list[len(list)/2]
 }
 
 // A tiltEffect is what a sensor that is turned at a driving point does to a pair of driving points.
 type tiltEffect int
 
 const (
-	likeGain tiltEffect = iota // a constant factor, or next to nothing
-	eitherOf                   // more than that on a part of the band
+	likeGain tiltEffect = iota // a constant factor over most of the band, or next to nothing
 	local                      // no factor explains it
 )
 
-const (
-	// A line disagrees with the best factor from 10 % on: twice what two calibrations differ by.
-	tiltedLine = 0.1
-	// Of so many lines the first may be called either, from the second on it is no factor.
-	eitherShare, localShare = 0.1, 1. / 3
-)
+// A third of the lines must be off the best factor by four times what two calibrations differ by, so that with few averages
+// too no factor can be said to repair it.
+const tiltedLine, tiltedShare = 0.2, 1. / 3
 
 // tiltOf is what turning the driving-point response of force a by the default amount does to its pair with force b.
 func (p *plan) tiltOf(a, b int) tiltEffect {
@@ -81,13 +85,21 @@ func (p *plan) tiltOf(a, b int) tiltEffect {
 			off++
 		}
 	}
-	switch share := float64(off) / float64(len(ratios)); {
-	case share > localShare:
+	if float64(off) > tiltedShare*float64(len(ratios)) {
 		return local
-	case share > eitherShare:
-		return eitherOf
 	}
 	return likeGain
+}
+
+// tiltShows tells whether a sensor that is turned at the driving point of force a makes some pair disagree by more than a
+// factor.
+func (p *plan) tiltShows(a int) bool {
+	for b := range p.rig.Forces {
+		if b != a && p.tiltOf(a, b) == local {
+			return true
+		}
+	}
+	return false
 }
 
 // turned is the frequency response to a force of what response o would measure along the positive next axis.

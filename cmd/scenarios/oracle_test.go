@@ -24,7 +24,7 @@ func planOf(t *testing.T, name string) *plan {
 func TestFallOfAForce(t *testing.T) {
 	p := planOf(t, "drive-off one")
 	i, q := slices.Index(names(p.rig.Forces), p.faults[0].Target[0]), len(p.rig.Forces)
-	if db := p.fallDB(i); db > fellFarDB {
+	if db := p.fallDB(i, 0); db > falls["drive-off"].farDB {
 		t.Fatalf("%s: falls by %.1f dB only: choose a seed with one that falls far", p, db)
 	}
 	s, err := p.drawn.Source(p.rig, 1)

@@ -97,7 +97,7 @@ var rights = []right{
 	{"detach", onForce, stingerOff()},
 	{"unhook", onForce, stingerOff()},
 	{"pad-off", onForce, stingerOff()},
-	{"drive-off", onForce, []answer{ // of a force that falls far: see onesThatFall
+	{"drive-off", onForce, []answer{ // of a force that falls far: see oneThatFalls
 		{watch.ForceLost, theTargets, severalShakers, "", whyCollapsed, 0},
 		{watch.NoDrive, allForces, oneShaker, "", whyAlone, 0},
 	}},

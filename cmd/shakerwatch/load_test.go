@@ -71,12 +71,10 @@ func testLoad(t *testing.T, bandHz, lineSpacingHz float64) {
 		t.Fatal(err)
 	}
 	next := loadNoise()
-	ticks := time.NewTicker(time.Second / 100)
-	defer ticks.Stop()
 	start := time.Now()
 	var early, late float64
-	for time.Since(start) < *loadTime {
-		<-ticks.C
+	for n := range *loadTime / hundredth {
+		awaitTick(start, n)
 		if _, err := stdin.Write(next()); err != nil {
 			t.Fatal(err)
 		}
@@ -129,8 +127,17 @@ func TestLatency(t *testing.T) {
 	}
 }
 
-// loadFrames are written at a time, a hundredth of a second of them.
-const loadFrames = loadRateHz / 100
+// Frames are written a hundredth of a second of them at a time.
+const (
+	hundredth  = time.Second / 100
+	loadFrames = loadRateHz / 100
+)
+
+// awaitTick waits until n hundredths of a second after start and the one that a device takes to fill
+// its buffer. A ticker would leave ticks out where the machine is slow.
+func awaitTick(start time.Time, n time.Duration) {
+	time.Sleep(time.Until(start.Add((n + 1) * hundredth)))
+}
 
 // runLoad runs the load for a while and returns when each hundredth of a second was written, and when each
 // block was averaged.
@@ -145,10 +152,9 @@ func runLoad(t *testing.T, r *rig.Rig) (written, averaged []time.Time) {
 		defer close(done)
 		defer to.Close()
 		next := loadNoise()
-		ticks := time.NewTicker(time.Second / 100)
-		defer ticks.Stop()
-		for range *loadTime / (time.Second / 100) {
-			<-ticks.C
+		start := time.Now()
+		for n := range *loadTime / hundredth {
+			awaitTick(start, n)
 			written = append(written, time.Now())
 			if _, err := to.Write(next()); err != nil {
 				t.Error(err)
