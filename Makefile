@@ -35,7 +35,7 @@ check: $(ECHARTS) tools
 # Debian packages that the tests need: a browser for the page, NumPy and SciPy for the references,
 # PortAudio for sound cards, and a sound server that stands in for one; a C compiler and FFTW for the benchmark.
 PACKAGES := chromium fonts-dejavu-core python3-numpy python3-scipy \
-	portaudio19-dev pulseaudio pulseaudio-utils libasound2-plugins gcc libc6-dev libfftw3-dev
+	portaudio19-dev pulseaudio pulseaudio-utils libasound2-plugins gcc libc6-dev libfftw3-dev libopenblas0-pthread
 tools:
 	@dpkg-query -W -f '$${db:Status-Status}\n' $(PACKAGES) 2>/dev/null | grep -cx installed | grep -qx $(words $(PACKAGES)) || { \
 		$(SUDO) apt-get update -q && \

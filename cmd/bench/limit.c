@@ -8,6 +8,8 @@
  * unroll its loops. Sums of (line, channel, force) hold Gxx in their first FORCES channels and Gyx in
  * the others.
  *
+ * The first line keeps Go's tools from taking this file for a part of the package.
+ *
  * usage: limit RECORDING BLOCKS THREADS frames|channels lines|channels TOGETHER
  *
  * Then, on standard input: a number does the job as often and answers "done"; "write" answers with
