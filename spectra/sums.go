@@ -62,10 +62,10 @@ func (s *sums) add(x, y []complex128, pairs [][2]int) {
 	}
 }
 
-// product is a b*, written out because the language's complex product checks for infinities.
+// product is a b*. The conversions keep a processor from fusing a product with the sum, as in package kernel.
 func product(a, b complex128) complex128 {
 	return complex(
-		real(a)*real(b)+imag(a)*imag(b),
-		imag(a)*real(b)-real(a)*imag(b),
+		float64(real(a)*real(b))+float64(imag(a)*imag(b)),
+		float64(imag(a)*real(b))-float64(real(a)*imag(b)),
 	)
 }

@@ -45,11 +45,3 @@ func (s said) bands() string {
 	}
 	return list(parts)
 }
-
-// plural is one or many, by the number of channels.
-func (s said) plural(one, many string) string {
-	if len(s.channels) == 1 {
-		return one
-	}
-	return many
-}

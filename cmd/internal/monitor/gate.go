@@ -14,6 +14,7 @@ type gate struct {
 	waiting   []decision // judged, in order; those at the front are decided
 	decided   int        // of them
 	scratch   []watch.Decision
+	done      []decision // of the last call of decisions
 }
 
 // A decision says what becomes of a block.
@@ -125,13 +126,10 @@ func (g *gate) end() {
 // decisions are those made since the last call, in the order of the blocks. They are valid until the next
 // block is judged.
 func (g *gate) decisions() []decision {
-	if g.decided == 0 {
-		return nil
-	}
-	done := append([]decision(nil), g.waiting[:g.decided]...)
+	g.done = append(g.done[:0], g.waiting[:g.decided]...)
 	g.waiting = g.waiting[:copy(g.waiting, g.waiting[g.decided:])]
 	g.decided = 0
-	return done
+	return g.done
 }
 
 // wants tells whether the watch is to learn the average of so many blocks.
